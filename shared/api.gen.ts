@@ -364,7 +364,7 @@ export interface components {
          * @description Length units; both code points of µ and of Å are taken
          * @enum {string}
          */
-        readonly LengthUnit: "m" | "cm" | "mm" | "µm" | "μm" | "um" | "nm" | "Å" | "Å" | "angstrom" | "in" | "ft";
+        readonly LengthUnit: "m" | "cm" | "mm" | "µm" | "μm" | "um" | "nm" | "Å" | "Å" | "angstrom" | "in" | "ft";
         /**
          * @description Charge units; both code points of µ and of Å are taken
          * @enum {string}
