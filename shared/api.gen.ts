@@ -172,6 +172,26 @@ export interface paths {
         readonly patch?: never;
         readonly trace?: never;
     };
+    readonly "/console/password": {
+        readonly parameters: {
+            readonly query?: never;
+            readonly header?: never;
+            readonly path?: never;
+            readonly cookie?: never;
+        };
+        readonly get?: never;
+        readonly put?: never;
+        /**
+         * Set a first password
+         * @description Redeems a one-time link, sets the password of the person it was made for, and signs in.
+         */
+        readonly post: operations["createPassword"];
+        readonly delete?: never;
+        readonly options?: never;
+        readonly head?: never;
+        readonly patch?: never;
+        readonly trace?: never;
+    };
     readonly "/console/keys": {
         readonly parameters: {
             readonly query?: never;
@@ -324,7 +344,7 @@ export interface components {
          * @description The closed list of problems; each is explained at /problems/{code}
          * @enum {string}
          */
-        readonly ProblemCode: "malformed-json" | "invalid-utf8" | "duplicate-member" | "nested-too-deep" | "empty-body" | "bad-request" | "malformed-authorization" | "misplaced-credential" | "invalid-query" | "invalid-header" | "key-required" | "invalid-key" | "sign-in-required" | "sign-in-failed" | "insufficient-scope" | "insufficient-role" | "cross-site-request" | "insecure-origin" | "not-found" | "method-not-allowed" | "not-acceptable" | "request-timeout" | "call-in-flight" | "key-state" | "body-too-large" | "url-too-long" | "unsupported-media-type" | "unsupported-encoding" | "wrong-type" | "missing-member" | "unknown-member" | "out-of-range" | "invalid-value" | "number-overflow" | "unknown-unit" | "unequal-columns" | "duplicate-id" | "zero-length-axis" | "not-a-rotation" | "conflicting-members" | "zero-length-step" | "coincident-target" | "overlapping-charges" | "too-many-rows" | "too-large-for-synchronous" | "exceeds-limit" | "idempotency-mismatch" | "rate-limited" | "allowance-exhausted" | "headers-too-large" | "internal" | "overloaded" | "time-out" | "not-ready";
+        readonly ProblemCode: "malformed-json" | "invalid-utf8" | "duplicate-member" | "nested-too-deep" | "empty-body" | "bad-request" | "malformed-authorization" | "misplaced-credential" | "invalid-query" | "invalid-header" | "key-required" | "invalid-key" | "sign-in-required" | "sign-in-failed" | "insufficient-scope" | "insufficient-role" | "cross-site-request" | "insecure-origin" | "not-found" | "method-not-allowed" | "not-acceptable" | "request-timeout" | "call-in-flight" | "key-state" | "link-spent" | "body-too-large" | "url-too-long" | "unsupported-media-type" | "unsupported-encoding" | "wrong-type" | "missing-member" | "unknown-member" | "out-of-range" | "invalid-value" | "number-overflow" | "unknown-unit" | "unequal-columns" | "duplicate-id" | "zero-length-axis" | "not-a-rotation" | "conflicting-members" | "zero-length-step" | "coincident-target" | "overlapping-charges" | "too-many-rows" | "too-large-for-synchronous" | "exceeds-limit" | "idempotency-mismatch" | "rate-limited" | "allowance-exhausted" | "headers-too-large" | "internal" | "overloaded" | "time-out" | "not-ready";
         /** @description Problem details (RFC 9457) */
         readonly Problem: {
             /**
@@ -433,7 +453,7 @@ export interface components {
              * @description [1] ε_r; potential, field, force and energy are divided by it
              * @default 1
              */
-            readonly relativePermittivity: number;
+            readonly relativePermittivity?: number;
         };
         /** @description [x, y, z] */
         readonly Vector3: [
@@ -544,7 +564,7 @@ export interface components {
              * @description Whether to answer a bound with every value; the true value is within it
              * @default false
              */
-            readonly bounds: boolean;
+            readonly bounds?: boolean;
         };
         /**
          * @description What happens where a target lies on a charge: null, leave that charge out, or refuse the request
@@ -577,17 +597,7 @@ export interface components {
             readonly bodies: components["schemas"]["Bodies"];
             readonly targets: components["schemas"]["Targets"];
             /** @description What to answer; potential and field if not given */
-            readonly quantities?: [
-            ] | [
-                "potential" | "field" | "magnitude" | "fieldGradient"
-            ] | [
-                "potential" | "field" | "magnitude" | "fieldGradient",
-                "potential" | "field" | "magnitude" | "fieldGradient"
-            ] | [
-                "potential" | "field" | "magnitude" | "fieldGradient",
-                "potential" | "field" | "magnitude" | "fieldGradient",
-                "potential" | "field" | "magnitude" | "fieldGradient"
-            ];
+            readonly quantities?: readonly ("potential" | "field" | "magnitude" | "fieldGradient")[];
             readonly accuracy?: components["schemas"]["AccuracyRequest"];
             readonly onCoincidence?: components["schemas"]["OnCoincidence"];
             readonly coincidenceDistance?: components["schemas"]["CoincidenceDistance"];
@@ -600,13 +610,7 @@ export interface components {
             /** @description [length unit] the point that torques are about; each body's placed origin if not given */
             readonly about?: components["schemas"]["Vector3"];
             /** @description What to answer besides; interactions are always there for up to 50 bodies */
-            readonly include?: [
-            ] | [
-                "charges" | "internalEnergy" | "interactions"
-            ] | [
-                "charges" | "internalEnergy" | "interactions",
-                "charges" | "internalEnergy" | "interactions"
-            ];
+            readonly include?: readonly ("charges" | "internalEnergy" | "interactions")[];
             /** @description Probe charges; they feel all bodies and act on none */
             readonly probes?: components["schemas"]["ChargeColumns"];
             readonly accuracy?: components["schemas"]["AccuracyRequest"];
@@ -1078,6 +1082,13 @@ export interface components {
             /** @description The password */
             readonly password: string;
         };
+        /** @description The word of a one-time link, and the password to be set */
+        readonly FirstPassword: {
+            /** @description The word at the end of the link */
+            readonly link: string;
+            /** @description At least 15 characters of any kind */
+            readonly password: string;
+        };
         /**
          * @description What a person may do
          * @enum {string}
@@ -1122,10 +1133,7 @@ export interface components {
          */
         readonly Scope: "compute:run" | "usage:read";
         /** @description What the key may do */
-        readonly Scopes: [
-        ] | [
-            components["schemas"]["Scope"]
-        ];
+        readonly Scopes: readonly components["schemas"]["Scope"][];
         /** @description A name for people */
         readonly KeyName: string;
         /** @description A key to be made */
@@ -1147,7 +1155,7 @@ export interface components {
              * @description [calls] that may come in 2 s, so half of it is the steady rate in calls a second
              * @default 100
              */
-            readonly burst: number;
+            readonly burst?: number;
         };
         /** @description How long both keys are valid */
         readonly Rotation: {
@@ -1156,7 +1164,7 @@ export interface components {
              * @description [h] for which the predecessor stays valid
              * @default 24
              */
-            readonly overlapHours: number;
+            readonly overlapHours?: number;
         };
         /**
          * @description Retiring keys have a successor and still work
@@ -2641,6 +2649,65 @@ export interface operations {
             readonly 503: components["responses"]["ServiceUnavailable"];
         };
     };
+    readonly createPassword: {
+        readonly parameters: {
+            readonly query?: never;
+            readonly header?: never;
+            readonly path?: never;
+            readonly cookie?: never;
+        };
+        /** @description The word of the link, and the password */
+        readonly requestBody: {
+            readonly content: {
+                /**
+                 * @example {
+                 *       "link": "Zp3mQ9wX0aB7kT2vL5cN8rY1dF4gH6jS0eU3iO9pQ2w",
+                 *       "password": "four words of your own"
+                 *     }
+                 */
+                readonly "application/json": components["schemas"]["FirstPassword"];
+            };
+        };
+        readonly responses: {
+            /** @description Who is signed in */
+            readonly 200: {
+                headers: {
+                    readonly "X-Request-Id": components["headers"]["X-Request-Id"];
+                    readonly [name: string]: unknown;
+                };
+                content: {
+                    /**
+                     * @example {
+                     *       "person": {
+                     *         "id": "0192f0c4-7b1e-7c3a-9f00-3d2a6f1b8e55",
+                     *         "email": "ines.halloran@aldervane.example",
+                     *         "name": "Ines Halloran",
+                     *         "role": "owner",
+                     *         "account": {
+                     *           "id": "0192f0c4-7b1e-7c3a-9f00-3d2a6f1b8e01",
+                     *           "name": "Aldervane Coating"
+                     *         }
+                     *       },
+                     *       "csrfToken": "2p9oXo1GZ0b1wJ6cPq8nRk4BvYt7LmQe"
+                     *     }
+                     */
+                    readonly "application/json": components["schemas"]["Session"];
+                };
+            };
+            readonly 400: components["responses"]["BadRequest"];
+            readonly 401: components["responses"]["Unauthorized"];
+            readonly 403: components["responses"]["Forbidden"];
+            readonly 406: components["responses"]["NotAcceptable"];
+            readonly 408: components["responses"]["RequestTimeout"];
+            readonly 409: components["responses"]["Conflict"];
+            readonly 413: components["responses"]["ContentTooLarge"];
+            readonly 415: components["responses"]["UnsupportedMediaType"];
+            readonly 422: components["responses"]["UnprocessableContent"];
+            readonly 429: components["responses"]["TooManyRequests"];
+            readonly 500: components["responses"]["InternalError"];
+            readonly 503: components["responses"]["ServiceUnavailable"];
+        };
+    };
     readonly listKeys: {
         readonly parameters: {
             readonly query?: never;
@@ -2759,7 +2826,7 @@ export interface operations {
                      *       "lastUsed": null,
                      *       "predecessor": null,
                      *       "successor": null,
-                     *       "secret": "fst_Lw81kTqP0z5N_0000example0not0a0working0key0000000c81e"
+                     *       "secret": "fst_Lw81kTqP0z5N_00example0not0a0working0key000000c81e"
                      *     }
                      */
                     readonly "application/json": components["schemas"]["CreatedKey"];
@@ -2877,7 +2944,7 @@ export interface operations {
                      *       "lastUsed": null,
                      *       "predecessor": null,
                      *       "successor": null,
-                     *       "secret": "fst_Lw81kTqP0z5N_0000example0not0a0working0key0000000c81e"
+                     *       "secret": "fst_Lw81kTqP0z5N_00example0not0a0working0key000000c81e"
                      *     }
                      */
                     readonly "application/json": components["schemas"]["CreatedKey"];
@@ -3147,6 +3214,7 @@ export interface operations {
                 };
             };
             readonly 400: components["responses"]["BadRequest"];
+            readonly 401: components["responses"]["Unauthorized"];
             readonly 406: components["responses"]["NotAcceptable"];
             readonly 429: components["responses"]["TooManyRequests"];
             readonly 500: components["responses"]["InternalError"];
@@ -3177,6 +3245,7 @@ export interface operations {
                 };
             };
             readonly 400: components["responses"]["BadRequest"];
+            readonly 401: components["responses"]["Unauthorized"];
             readonly 406: components["responses"]["NotAcceptable"];
             readonly 429: components["responses"]["TooManyRequests"];
             readonly 500: components["responses"]["InternalError"];

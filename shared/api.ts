@@ -51,3 +51,5 @@ export type KeyState = Schemas['KeyState'];
 export type CreatedKey = Schemas['CreatedKey'];
 export type NewKey = Schemas['NewKey'];
 export type Rotation = Schemas['Rotation'];
+export type SignIn = Schemas['SignIn'];
+export type FirstPassword = Schemas['FirstPassword'];

@@ -165,6 +165,12 @@ export const problemCatalogue: Readonly<Record<ProblemCode, ProblemKind>> = {
     'What was asked for is not possible in the present state of the key; a revoked or expired key can not be rotated.',
     'Create a new key instead.',
   ),
+  'link-spent': kind(
+    409,
+    'The link can not be used',
+    'A one-time link works once, within 24 hours.',
+    'Have a new one made: npm run admin:create prints one, for a person who exists as well.',
+  ),
   'body-too-large': kind(
     413,
     'The body is too large',

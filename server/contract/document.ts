@@ -1,9 +1,11 @@
 import {readFileSync} from 'node:fs';
 import {parse} from 'yaml';
 
-import type {OperationId} from '../../shared/api.ts';
+import type {OperationId, Role, Scope} from '../../shared/api.ts';
 
 export type Method = 'get' | 'post' | 'delete';
+
+type SecurityRequirement = Readonly<Partial<Record<'apiKey' | 'session', readonly never[]>>>;
 
 export interface Parameter {
   readonly name: string;
@@ -15,7 +17,9 @@ export interface Parameter {
 
 export interface OperationObject {
   readonly operationId: OperationId;
-  readonly security?: readonly Readonly<Record<string, readonly string[]>>[];
+  readonly security?: readonly SecurityRequirement[];
+  readonly 'x-scopes'?: readonly Scope[];
+  readonly 'x-roles'?: readonly Role[];
   readonly parameters?: readonly (Parameter | {readonly $ref: string})[];
   readonly requestBody?: {
     readonly required?: boolean;
@@ -33,7 +37,7 @@ interface ContractDocument {
     readonly parameters: Readonly<Record<string, Parameter>>;
     readonly schemas: Readonly<Record<string, object>>;
   };
-  readonly security: OperationObject['security'];
+  readonly security: readonly [SecurityRequirement];
 }
 
 /** One operation of the contract, with what applies to it resolved. */
@@ -42,7 +46,12 @@ export interface ContractOperation {
   readonly method: Method;
   /** As the contract writes it: `/console/keys/{id}`. */
   readonly path: string;
-  readonly security: readonly Readonly<Record<string, readonly string[]>>[];
+  /** Who may call: keys, people, or anybody. */
+  readonly callers: 'apiKey' | 'session' | 'anybody';
+  /** What the key must be allowed to do. */
+  readonly scopes: readonly Scope[];
+  /** What the person must be; empty for any role. */
+  readonly roles: readonly Role[];
   readonly parameters: readonly Parameter[];
   readonly object: OperationObject;
 }
@@ -68,11 +77,18 @@ export const operations: readonly ContractOperation[] = Object.entries(contract.
       id: object.operationId,
       method,
       path,
-      security: object.security ?? contract.security ?? [],
+      callers: callersOf((object.security ?? contract.security)[0]),
+      scopes: object['x-scopes'] ?? [],
+      roles: object['x-roles'] ?? [],
       parameters: (object.parameters ?? []).map(resolveParameter),
       object,
     })),
 );
+
+function callersOf(requirement: SecurityRequirement): ContractOperation['callers'] {
+  if (requirement.apiKey) return 'apiKey';
+  return requirement.session ? 'session' : 'anybody';
+}
 
 function resolveParameter(parameter: Parameter | {readonly $ref: string}): Parameter {
   if (!('$ref' in parameter)) return parameter;

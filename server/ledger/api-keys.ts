@@ -208,13 +208,13 @@ export async function list({db}: Database, accountId: string, now: Date): Promis
     .where('k.account_id', '=', accountId)
     .selectAll('k')
     .select('s.id as successor_id')
-    .select(({selectFrom, fn}) => [
+    .select(({selectFrom}) => [
       selectFrom('usage_day as u')
         .whereRef('u.account_id', '=', 'k.account_id')
         .whereRef('u.source_id', '=', 'k.id')
         .where('u.day', '>=', `${month}-01`)
         .where('u.day', '<=', `${month}-31`)
-        .select(fn.sum<number | null>('u.pairs').as('pairs'))
+        .select(({fn}) => fn.sum<number | null>('u.pairs').as('pairs'))
         .as('spent'),
       selectFrom('balance as b')
         .whereRef('b.account_id', '=', 'k.account_id')
@@ -255,7 +255,7 @@ function describe(row: ListedKey, now: Date): Key {
     prefix: `fst_${row.id}`,
     lastFour: row.last_four,
     state: stateOf(row, rfc3339(now)),
-    scopes: JSON.parse(row.scopes) as [Scope],
+    scopes: JSON.parse(row.scopes) as Scope[],
     monthlyLimit: row.monthly_limit,
     spent: row.spent,
     held: row.held,

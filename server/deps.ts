@@ -1,0 +1,14 @@
+import type {Logger} from 'pino';
+
+import type {Config} from './config.ts';
+import type {Database} from './db/open.ts';
+import type {Engine} from './engine/pool.ts';
+
+/** What has a lifetime or a clock; made in main.ts and passed by hand. */
+export interface Deps {
+  readonly config: Config;
+  readonly database: Database;
+  readonly engine: Engine;
+  readonly log: Logger;
+  readonly now: () => Date;
+}

@@ -1,0 +1,67 @@
+import {randomInt} from 'node:crypto';
+import {RateLimiterMemory, RateLimiterRes} from 'rate-limiter-flexible';
+
+import {ServiceError} from '../errors.ts';
+
+/** Seconds in which a key may make as many calls as its burst says: half of it is the steady rate. */
+export const BURST_WINDOW = 2;
+const STRANGER_WINDOW = 10;
+
+export interface BurstState {
+  readonly left: number;
+  /** Until the window ends [s]. */
+  readonly resets: number;
+}
+
+/**
+ * Counts the calls of keys and of strangers in short windows of memory. Months are the ledger's.
+ *
+ * The limiter keeps its windows in timers, so they must stay short, and it takes any number for a
+ * burst, so bursts come checked from the contract.
+ */
+export class Bursts {
+  readonly #limiters = new Map<number, RateLimiterMemory>();
+  readonly #strangers: RateLimiterMemory;
+
+  constructor(strangerCalls: number) {
+    this.#strangers = new RateLimiterMemory({points: strangerCalls, duration: STRANGER_WINDOW});
+  }
+
+  /** @throws ServiceError rate-limited */
+  async count(keyId: string, burst: number): Promise<BurstState> {
+    let limiter = this.#limiters.get(burst);
+    if (!limiter) {
+      limiter = new RateLimiterMemory({
+        points: burst,
+        duration: BURST_WINDOW,
+        keyPrefix: String(burst),
+      });
+      this.#limiters.set(burst, limiter);
+    }
+    const text = `The key allows ${burst} calls in ${BURST_WINDOW} s.`;
+    const state = await consume(limiter, keyId, text);
+    return {left: state.remainingPoints, resets: Math.ceil(state.msBeforeNext / 1000)};
+  }
+
+  /** Counts a call without a valid key. @throws ServiceError rate-limited */
+  async countStranger(address: string): Promise<void> {
+    const text = `Without a valid key, an address may make ${this.#strangers.points} calls in ${STRANGER_WINDOW} s.`;
+    await consume(this.#strangers, address, text);
+  }
+}
+
+async function consume(
+  limiter: RateLimiterMemory,
+  name: string,
+  text: string,
+): Promise<RateLimiterRes> {
+  try {
+    return await limiter.consume(name);
+  } catch (state) {
+    // The limiter rejects with its state when the window is used up, and with an Error for a bug.
+    if (!(state instanceof RateLimiterRes)) throw state;
+    // Spread over a second more, or all that were refused come back at the same instant.
+    const seconds = Math.ceil(state.msBeforeNext / 1000) + randomInt(2);
+    throw new ServiceError('rate-limited', text, {retryAfter: Math.max(1, seconds)});
+  }
+}

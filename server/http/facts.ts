@@ -1,0 +1,17 @@
+import type {Response} from 'express';
+
+import type {OperationId, ProblemCode} from '../../shared/api.ts';
+import type {RequestIds} from './request-ids.ts';
+
+/** What the log may say of a request: this list and nothing else. No header, address line, body or error. */
+export interface Facts extends RequestIds {
+  operation?: OperationId;
+  key?: string;
+  person?: string;
+  pairs?: number | undefined;
+  problem?: ProblemCode;
+}
+
+export function factsOf(res: Response): Facts {
+  return res.locals as Facts;
+}

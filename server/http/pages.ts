@@ -1,0 +1,80 @@
+import {randomBytes} from 'node:crypto';
+import {existsSync, readFileSync} from 'node:fs';
+import {createRequire} from 'node:module';
+import {dirname, join} from 'node:path';
+import {fileURLToPath} from 'node:url';
+import compression from 'compression';
+import express, {type Express, type Response} from 'express';
+
+import {problemCatalogue} from '../../shared/problem-catalogue.ts';
+import {contractText} from '../contract/document.ts';
+import type {Deps} from '../deps.ts';
+import {ServiceError} from '../errors.ts';
+import {refuseOtherMethods} from './mount.ts';
+import {problemListPage, problemPage} from './problem-pages.ts';
+import {consoleHeaders, documentHeaders, type Headers} from './security-headers.ts';
+
+const swaggerFolder = dirname(
+  createRequire(import.meta.url).resolve('swagger-ui-dist/package.json'),
+);
+const publicFolder = fileURLToPath(new URL('./public/', import.meta.url));
+
+/** What is not an operation: the contract itself, its reference page, the problems, the console. */
+export function mountPages(app: Express, deps: Deps): void {
+  const isHttps = deps.config.publicUrl.startsWith('https:');
+  app.use(['/docs', '/problems', '/openapi.yaml', '/assets'], compression());
+  mountReference(app, documentHeaders(isHttps));
+  mountConsole(app, isHttps);
+}
+
+function mountReference(app: Express, headers: Headers): void {
+  app.get('/openapi.yaml', (_req, res) => {
+    res.setHeader('Cache-Control', 'no-cache');
+    res.type('application/yaml').end(contractText);
+  });
+  refuseOtherMethods(app, '/openapi.yaml', ['GET']);
+
+  app.use('/docs', express.static(publicFolder, {index: false}));
+  app.use('/docs', express.static(swaggerFolder, {index: false}));
+  app.get('/docs', (_req, res) =>
+    sendPage(res, headers, readFileSync(join(publicFolder, 'docs.html'))),
+  );
+
+  app.get('/problems', (_req, res) => sendPage(res, headers, problemListPage()));
+  app.get('/problems/:code', ({params}, res) => {
+    const code = Object.keys(problemCatalogue).find(one => one === params.code);
+    if (!code) throw new ServiceError('not-found', 'There is no problem of this name.');
+    sendPage(res, headers, problemPage(code as keyof typeof problemCatalogue));
+  });
+}
+
+function sendPage(res: Response, headers: Headers, page: string | Buffer): void {
+  for (const [name, value] of headers) res.setHeader(name, value);
+  res.setHeader('Cache-Control', 'no-cache');
+  res.type('html').end(page);
+}
+
+/** Where `ng build` puts the console; seen from the source and from the compiled server. */
+function consoleFolder(): string | null {
+  const folders = ['../../dist/console/browser/', '../../console/browser/'];
+  const found = folders.map(one => fileURLToPath(new URL(one, import.meta.url)));
+  return found.find(folder => existsSync(join(folder, 'index.html'))) ?? null;
+}
+
+function mountConsole(app: Express, isHttps: boolean): void {
+  const folder = consoleFolder();
+  if (!folder) return; // In development ng serve has it.
+  const index = readFileSync(join(folder, 'index.html'), 'utf8');
+  app.use(compression());
+  // Names carry a hash of the content, so they never change what they mean.
+  app.use(express.static(folder, {index: false, immutable: true, maxAge: '1y', redirect: false}));
+  app.get('/{*page}', (req, res, next) => {
+    const isApi = /^\/(v1|console)(\/|$)/.test(req.path);
+    if (isApi || /\.\w+$/.test(req.path) || !req.accepts('html') || req.headers.accept === '*/*') {
+      next();
+      return;
+    }
+    const nonce = randomBytes(16).toString('base64');
+    sendPage(res, consoleHeaders(isHttps, nonce), index.replaceAll('CSP_NONCE', nonce));
+  });
+}

@@ -1,0 +1,69 @@
+import helmet, {type HelmetOptions} from 'helmet';
+import type {IncomingMessage, ServerResponse} from 'node:http';
+
+export type Headers = readonly (readonly [string, string])[];
+
+type Directives = Readonly<Record<string, readonly string[]>>;
+
+const nothing: Directives = {'default-src': ["'none'"], 'frame-ancestors': ["'none'"]};
+
+/** For answers that are data: nothing in them may be loaded or run. */
+export function apiHeaders(isHttps: boolean): Headers {
+  return headersOf(nothing, isHttps);
+}
+
+/** For the console. Trusted Types would be next; the chart library still assigns markup. */
+export function consoleHeaders(isHttps: boolean, nonce: string): Headers {
+  return headersOf(
+    {
+      'default-src': ["'none'"],
+      'script-src': ["'self'"],
+      'style-src': ["'self'", `'nonce-${nonce}'`],
+      'img-src': ["'self'", 'data:', 'blob:'],
+      'font-src': ["'self'"],
+      'connect-src': ["'self'"],
+      'object-src': ["'none'"],
+      'base-uri': ["'none'"],
+      'form-action': ["'self'"],
+      'frame-ancestors': ["'none'"],
+    },
+    isHttps,
+  );
+}
+
+/** For the reference page of the API and the pages that explain problems. */
+export function documentHeaders(isHttps: boolean): Headers {
+  return headersOf(
+    {
+      'default-src': ["'none'"],
+      'script-src': ["'self'"],
+      'style-src': ["'self'"],
+      'img-src': ["'self'", 'data:'],
+      'font-src': ["'self'"],
+      'connect-src': ["'self'"],
+      'base-uri': ["'none'"],
+      'form-action': ["'none'"],
+      'frame-ancestors': ["'none'"],
+    },
+    isHttps,
+  );
+}
+
+/** What helmet would set, worked out once: running it on every request costs more than the ledger. */
+function headersOf(directives: Directives, isHttps: boolean): Headers {
+  const options: HelmetOptions = {
+    // No upgrade-insecure-requests: it breaks plain HTTP where TLS is not ours.
+    contentSecurityPolicy: {useDefaults: false, directives: directives as Record<string, string[]>},
+    strictTransportSecurity: isHttps && {maxAge: 31_536_000, includeSubDomains: true},
+    referrerPolicy: {policy: 'no-referrer'},
+  };
+  const set: [string, string][] = [];
+  const response = {
+    setHeader: (name: string, value: string) => set.push([name, value]),
+    removeHeader: () => undefined,
+  };
+  helmet(options)({} as IncomingMessage, response as unknown as ServerResponse, error => {
+    if (error) throw error instanceof Error ? error : new Error('helmet failed');
+  });
+  return set;
+}

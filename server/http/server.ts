@@ -1,0 +1,71 @@
+import {randomUUID} from 'node:crypto';
+import {createServer, STATUS_CODES, type Server} from 'node:http';
+import type {Duplex} from 'node:stream';
+
+import type {ProblemCode} from '../../shared/api.ts';
+import type {Deps} from '../deps.ts';
+import {ServiceError} from '../errors.ts';
+import {createApp} from './app.ts';
+import {problemOf} from './problem.ts';
+
+/** The HTTP server: what has to be right before Express sees a request. */
+export function createHttpServer(deps: Deps): Server {
+  const {limits} = deps.config;
+  const app = createApp(deps);
+  const server = createServer(
+    {
+      maxHeaderSize: limits.headerBytes,
+      headersTimeout: limits.headersMilliseconds,
+      requestTimeout: limits.requestMilliseconds,
+      // Longer than the idle time of common proxies, or they meet closed sockets.
+      keepAliveTimeout: limits.keepAliveMilliseconds,
+      connectionsCheckingInterval: 1000,
+      requireHostHeader: false,
+    },
+    app,
+  );
+  // Node would answer 100 by itself; here the body reader does, once the caller is known.
+  server.on('checkContinue', app);
+  server.on('clientError', (error: NodeJS.ErrnoException, socket: Duplex) => {
+    answerUnreadable(deps, error.code ?? '', socket);
+  });
+  return server;
+}
+
+const codes: Readonly<Record<string, ProblemCode>> = {
+  HPE_HEADER_OVERFLOW: 'headers-too-large',
+  ERR_HTTP_REQUEST_TIMEOUT: 'request-timeout',
+};
+
+/** Answers what Node's parser refused, in the form of every other problem. */
+function answerUnreadable({config, log}: Deps, cause: string, socket: Duplex): void {
+  if (cause === 'ECONNRESET' || !socket.writable) {
+    socket.destroy();
+    return;
+  }
+  const code = codes[cause] ?? 'bad-request';
+  const detail = {
+    'headers-too-large': `The headers of a request may be ${config.limits.headerBytes} bytes in all.`,
+    'request-timeout': 'The request did not arrive in time.',
+  };
+  const text = detail[code as keyof typeof detail] ?? 'The bytes received are not an HTTP request.';
+  const requestId = `req_${randomUUID().replaceAll('-', '').slice(0, 24)}`;
+  const problem = problemOf(new ServiceError(code, text), config.publicUrl, requestId);
+  const body = JSON.stringify(problem);
+  socket.end(
+    [
+      `HTTP/1.1 ${problem.status} ${STATUS_CODES[problem.status]}`,
+      'Content-Type: application/problem+json',
+      `Content-Length: ${Buffer.byteLength(body)}`,
+      `X-Request-Id: ${requestId}`,
+      'X-Content-Type-Options: nosniff',
+      "Content-Security-Policy: default-src 'none';frame-ancestors 'none'",
+      'Referrer-Policy: no-referrer',
+      'Cache-Control: no-store',
+      'Connection: close',
+      '',
+      body,
+    ].join('\r\n'),
+  );
+  log.info({requestId, status: problem.status, problem: code});
+}
