@@ -1,0 +1,94 @@
+import type {EchoedUnits, Operation} from '../../../shared/api.ts';
+import {CONSTANTS_EDITION} from '../../../shared/physical-constants.ts';
+import {unitOf} from '../../../shared/units.ts';
+import {dimensionsOf, symbolOf, type FilledRequest} from '../filled-request.ts';
+import type {PackedPlacement} from '../placement.ts';
+import type {Plan} from '../plan.ts';
+import {inputDigest} from './digests.ts';
+import {notices} from './notices.ts';
+
+/** Changes whenever the same request may give other bits. */
+export const ENGINE_VERSION = '0.1.0';
+
+/** What an answer says besides its numbers; plain data, so that a thread can write the answer. */
+export interface AnswerHeader {
+  readonly operation: Operation;
+  readonly bodyIds: readonly string[];
+  readonly units: EchoedUnits;
+  /** In the request's length unit. */
+  readonly coincidenceDistance: number;
+  readonly placements: readonly {readonly body: string; readonly matrix: readonly number[]}[];
+  readonly pairs: number;
+  readonly inputDigest: string;
+  /** Which member of `targets` the request has, for pointers. */
+  readonly targets: 'points' | 'grid' | 'path' | 'none';
+}
+
+/** How long a call waited and took [ms]. */
+export interface Timing {
+  readonly queuedMilliseconds: number;
+  readonly computedMilliseconds: number;
+}
+
+export function answerHeader(plan: Plan, placements: readonly PackedPlacement[]): AnswerHeader {
+  const {operation, request, pairs} = plan;
+  const {points, grid, path} = request.targets ?? {};
+  return {
+    operation,
+    bodyIds: request.bodies.map(body => body.id),
+    units: echoedUnits(operation, request),
+    coincidenceDistance: request.coincidenceDistance ?? 0,
+    placements: request.bodies.flatMap(({id}, index) => {
+      const matrix = placements[index].usedMatrix;
+      return matrix ? [{body: id, matrix}] : [];
+    }),
+    pairs,
+    inputDigest: inputDigest(request),
+    targets: points ? 'points' : grid ? 'grid' : path ? 'path' : 'none',
+  };
+}
+
+function echoedUnits(operation: Operation, request: FilledRequest): EchoedUnits {
+  const length = symbolOf(request, 'length');
+  const charge = symbolOf(request, 'charge');
+  const echoed: Record<string, string> = {length, charge};
+  for (const dimension of dimensionsOf(operation, request.quantities ?? [])) {
+    echoed[dimension] = symbolOf(request, dimension);
+  }
+  if (operation === 'moments') {
+    echoed['dipole'] = `${charge}·${length}`;
+    echoed['quadrupole'] = `${charge}·${length}²`;
+  }
+  return echoed as unknown as EchoedUnits;
+}
+
+/** [length unit] The larger of what was asked for and what rounding asks for. */
+export function usedCoincidenceDistance(header: AnswerHeader, reach: number): number {
+  const unit = unitOf('length', header.units.length);
+  const asked = header.coincidenceDistance;
+  return reach > unit.toSI(asked) ? unit.fromSI(reach) : asked;
+}
+
+const toMicroseconds = (milliseconds: number): number => Math.round(milliseconds * 1000) / 1000;
+
+/** The members that all answers end with. */
+export function answerTail(
+  header: AnswerHeader,
+  coincidenceDistance: number,
+  resultDigest: string,
+  timing: Timing,
+) {
+  return {
+    accuracy: {method: 'direct', coincidenceDistance},
+    ...(header.placements.length > 0 && {placements: header.placements}),
+    cost: {
+      pairs: header.pairs,
+      queuedMilliseconds: toMicroseconds(timing.queuedMilliseconds),
+      computedMilliseconds: toMicroseconds(timing.computedMilliseconds),
+    },
+    engine: {version: ENGINE_VERSION, constants: CONSTANTS_EDITION},
+    inputDigest: header.inputDigest,
+    resultDigest,
+    notices,
+  };
+}

@@ -1,0 +1,44 @@
+import {computeForceBlock} from './analyses/force-block.ts';
+import {fieldAnswer} from './answers/field-answer.ts';
+import {forceAnswer} from './answers/force-answer.ts';
+import type {AnswerHeader, Timing} from './answers/header.ts';
+import {momentAnswer} from './answers/moment-answer.ts';
+import {computeFieldBlock} from './field-block.ts';
+import type {BlockReport, Job, Stop} from './jobs.ts';
+
+/** How many blocks a job has. */
+export const blockCount = (job: Job): number => job.blocks.length - 1;
+
+/** Computes one block of a job into its `out`: pure but for that, and the same on any thread. */
+export function computeBlock(job: Job, block: number, stop: Stop): BlockReport {
+  switch (job.kind) {
+    case 'field':
+      return computeFieldBlock(job, block, stop);
+    case 'force':
+      return computeForceBlock(job, block, stop);
+    case 'moment':
+      throw new RangeError('moments have no blocks');
+  }
+}
+
+/**
+ * Writes the answer of a job, whose blocks are all done, as JSON in UTF-8.
+ *
+ * @returns undefined if it was stopped
+ */
+export function writeAnswer(
+  header: AnswerHeader,
+  job: Job,
+  reports: readonly BlockReport[],
+  timing: Timing,
+  stop: Stop,
+): Uint8Array | undefined {
+  switch (job.kind) {
+    case 'field':
+      return fieldAnswer(header, job, reports, timing, stop);
+    case 'force':
+      return forceAnswer(header, job, reports, timing);
+    case 'moment':
+      return momentAnswer(header, job, timing);
+  }
+}

@@ -1,0 +1,191 @@
+import {unitOf} from '../../shared/units.ts';
+import {answerHeader, type AnswerHeader} from './answers/header.ts';
+import {totalOf} from './compensated-sum.ts';
+import {symbolOf, type FilledRequest} from './filled-request.ts';
+import {FIELD_COLUMNS, FORCE_STRIDE, type FieldColumn, type Job} from './jobs.ts';
+import type {BoundKind, SumKind} from './methods/direct-sum.ts';
+import {packAssembly, packProbes, type PackedAssembly} from './pack-charges.ts';
+import {packMoments} from './pack-moments.ts';
+import type {Plan} from './plan.ts';
+import {convert, position} from './positions.ts';
+import {packTargets} from './targets.ts';
+
+/** A request ready to be computed by any thread: the border between contract and kernels. */
+export interface PackedCall {
+  readonly header: AnswerHeader;
+  readonly job: Job;
+}
+
+/** Up to here bounds are made of the rounding errors themselves, above of worst cases. */
+const PAIRS_WITH_ERRORS = 1e8;
+
+/** Blocks take some 10 ms, so that calls share the threads fairly and stop soon. */
+const PAIRS_PER_BLOCK = 2e6;
+const PAIRS_PER_BLOCK_WITH_ERRORS = 3e5;
+const TARGETS_PER_BLOCK = 16_384;
+
+export function pack(plan: Plan): PackedCall {
+  switch (plan.operation) {
+    case 'potentials':
+    case 'fields':
+      return packFields(plan);
+    case 'forces':
+      return packForces(plan);
+    case 'moments':
+      return packMoments(plan);
+  }
+}
+
+const shared = (length: number): Float64Array =>
+  new Float64Array(new SharedArrayBuffer(length * Float64Array.BYTES_PER_ELEMENT));
+
+function boundKind(hasBounds: boolean, pairs: number): BoundKind {
+  if (!hasBounds) return 'none';
+  return pairs <= PAIRS_WITH_ERRORS ? 'errors' : 'magnitudes';
+}
+
+/** How many targets make a block: from the size of the call, never from the number of threads. */
+function targetsPerBlock(sources: number, bounds: BoundKind): number {
+  const pairs = bounds === 'errors' ? PAIRS_PER_BLOCK_WITH_ERRORS : PAIRS_PER_BLOCK;
+  return Math.max(1, Math.min(TARGETS_PER_BLOCK, Math.floor(pairs / sources)));
+}
+
+/** Appends the starts of the blocks of `from` … `to` − 1. */
+function appendBlocks(blocks: number[], from: number, to: number, size: number): void {
+  for (let start = from; start < to; start += size) blocks.push(start);
+}
+
+function packFields(plan: Plan): PackedCall {
+  const {request, sources, targets: count} = plan;
+  const assembly = packAssembly(request);
+  const length = unitOf('length', symbolOf(request, 'length'));
+  if (!request.targets) throw new RangeError('expected targets');
+  const columns = fieldColumns(request);
+  const bounds = boundKind(request.accuracy?.bounds === true, plan.sources * count);
+  const blocks: number[] = [];
+  appendBlocks(blocks, 0, count, targetsPerBlock(sources, bounds));
+  blocks.push(count);
+  return {
+    header: answerHeader(plan, assembly.placements),
+    job: {
+      kind: 'field',
+      charges: assembly.charges,
+      starts: assembly.starts,
+      targets: packTargets(request.targets, length),
+      count,
+      sum: sumKind(request),
+      bounds,
+      columns,
+      relativePermittivity: request.medium?.relativePermittivity ?? 1,
+      symbols: {
+        charge: symbolOf(request, 'charge'),
+        potential: symbolOf(request, 'potential'),
+        field: symbolOf(request, 'field'),
+        fieldGradient: symbolOf(request, 'fieldGradient'),
+      },
+      coincidenceDistance: length.toSI(request.coincidenceDistance ?? 0),
+      onCoincidence: request.onCoincidence ?? 'mask',
+      blocks,
+      out: shared(columns.length * count),
+    },
+  };
+}
+
+function sumKind({quantities = []}: FilledRequest): SumKind {
+  if (quantities.includes('fieldGradient')) return 'fieldGradient';
+  return quantities.includes('field') || quantities.includes('magnitude') ? 'field' : 'potential';
+}
+
+function fieldColumns({quantities = [], accuracy}: FilledRequest): FieldColumn[] {
+  const asked = {
+    potential: quantities.includes('potential'),
+    field: quantities.includes('field'),
+    magnitude: quantities.includes('magnitude'),
+    gradient: quantities.includes('fieldGradient'),
+    bounds: accuracy?.bounds === true,
+  };
+  const isAnswered = (column: FieldColumn): boolean => {
+    switch (column) {
+      case 'potential':
+        return asked.potential;
+      case 'fieldX':
+      case 'fieldY':
+      case 'fieldZ':
+        return asked.field;
+      case 'fieldMagnitude':
+        return asked.magnitude;
+      case 'potentialBound':
+        return asked.bounds && asked.potential;
+      case 'fieldBound':
+        return asked.bounds && (asked.field || asked.magnitude);
+      case 'fieldGradientBound':
+        return asked.bounds && asked.gradient;
+      default:
+        return asked.gradient;
+    }
+  };
+  return FIELD_COLUMNS.filter(isAnswered);
+}
+
+function packForces(plan: Plan): PackedCall {
+  const {request, sources, work, targets, hasInteractions} = plan;
+  const assembly = packAssembly(request);
+  const probes = packProbes(request);
+  const include = request.include ?? [];
+  const hasBounds = request.accuracy?.bounds === true;
+  const bounds = boundKind(hasBounds, work);
+  const size = targetsPerBlock(sources, bounds);
+  const blocks: number[] = [];
+  for (let b = 0; b + 1 < assembly.starts.length; b++) {
+    appendBlocks(blocks, assembly.starts[b], assembly.starts[b + 1], size);
+  }
+  appendBlocks(blocks, sources, targets, size);
+  blocks.push(targets);
+  return {
+    header: answerHeader(plan, assembly.placements),
+    job: {
+      kind: 'force',
+      charges: assembly.charges,
+      ...(probes && {probes}),
+      starts: assembly.starts,
+      hasBounds,
+      bounds,
+      hasInternalEnergy: include.includes('internalEnergy'),
+      hasInteractions,
+      hasCharges: include.includes('charges'),
+      relativePermittivity: request.medium?.relativePermittivity ?? 1,
+      symbols: {
+        length: symbolOf(request, 'length'),
+        charge: symbolOf(request, 'charge'),
+        force: symbolOf(request, 'force'),
+        torque: symbolOf(request, 'torque'),
+        energy: symbolOf(request, 'energy'),
+      },
+      ...momentArms(request, assembly),
+      totalCharges: request.bodies.map(body => totalOf(body.charges.charge)),
+      blocks,
+      out: shared(FORCE_STRIDE * targets),
+    },
+  };
+}
+
+/** The point that each body's torque is about, [m] and in the request's unit. */
+function momentArms(
+  request: FilledRequest,
+  {placements}: PackedAssembly,
+): {about: number[][]; aboutAsGiven: number[][]} {
+  const length = unitOf('length', symbolOf(request, 'length'));
+  const about: number[][] = [];
+  const aboutAsGiven: number[][] = [];
+  request.bodies.forEach(({placement}, index) => {
+    const {matrix, translate} = placement ?? {};
+    const origin = matrix ? [matrix[3], matrix[7], matrix[11]] : (translate ?? [0, 0, 0]);
+    const {shift} = placements[index];
+    const given = request.about;
+    const at = position();
+    if (given) convert(length, given[0], given[1], given[2], at);
+    about.push(given ? [at.x, at.y, at.z] : [shift.x, shift.y, shift.z]);
+    aboutAsGiven.push([...(given ?? origin)]);
+  });
+  return {about, aboutAsGiven};
+}

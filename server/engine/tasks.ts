@@ -1,0 +1,72 @@
+import type {Operation, ProblemCode} from '../../shared/api.ts';
+import type {Issue} from '../errors.ts';
+import type {AnswerHeader, Timing} from './answers/header.ts';
+import type {BlockReport, Job} from './jobs.ts';
+import type {EngineLimits} from './limits.ts';
+import type {PackedCall} from './pack.ts';
+import type {Plan} from './plan.ts';
+
+/** What a thread is asked to do; plain data. `flag` is shared: not 0 means stop. */
+export type Task =
+  | {
+      readonly type: 'prepare';
+      readonly operation: Operation | 'estimates';
+      readonly bytes: Uint8Array;
+      readonly limits: EngineLimits;
+    }
+  | {readonly type: 'pack'; readonly plan: Plan}
+  | {
+      readonly type: 'block';
+      readonly job: Job;
+      readonly block: number;
+      readonly flag: Int32Array;
+    }
+  | {
+      readonly type: 'answer';
+      readonly header: AnswerHeader;
+      readonly job: Job;
+      readonly reports: readonly BlockReport[];
+      readonly timing: Timing;
+      readonly flag: Int32Array;
+    }
+  | {
+      /** A call that is one block: all of it at once. */
+      readonly type: 'whole';
+      readonly plan: Plan;
+      readonly call: PackedCall | undefined;
+      readonly queuedMilliseconds: number;
+      readonly flag: Int32Array;
+    };
+
+/** What is kept of a call between preparing and running it. */
+export interface PreparedCall {
+  readonly plan: Plan;
+  /** There already if a thread has read the body. */
+  readonly call?: PackedCall;
+}
+
+export interface WrittenAnswer {
+  /** Undefined if it was stopped. */
+  readonly bytes: Uint8Array | undefined;
+  readonly timing: Timing;
+}
+
+/** What each type of task results in. */
+export interface TaskResults {
+  readonly prepare: PreparedCall;
+  readonly pack: PackedCall;
+  readonly block: BlockReport;
+  readonly answer: WrittenAnswer;
+  readonly whole: WrittenAnswer;
+}
+
+/** A ServiceError as plain data: threads can pass on neither its class nor its members. */
+export interface Refusal {
+  readonly code: ProblemCode;
+  readonly message: string;
+  readonly errors: readonly Issue[];
+  readonly errorCount: number;
+}
+
+export type TaskResponse =
+  {readonly result: TaskResults[Task['type']]} | {readonly refusal: Refusal};

@@ -1,0 +1,57 @@
+import {createRequire} from 'node:module';
+import {fileURLToPath, pathToFileURL} from 'node:url';
+import {Piscina} from 'piscina';
+
+import {ServiceError} from '../errors.ts';
+import type {Task, TaskResponse, TaskResults} from './tasks.ts';
+
+/** [MiB] of heap a thread may have before it is ended; results lie outside, in shared memory. */
+const HEAP = 512;
+
+type ResultOf<T extends Task> = TaskResults[T['type']];
+
+/** Threads that do tasks, one each at a time. */
+export class Threads {
+  readonly count: number;
+  readonly #pool: Piscina<Task, TaskResponse>;
+
+  constructor(count: number) {
+    this.count = count;
+    this.#pool = new Piscina({
+      ...workerFile(),
+      minThreads: count,
+      maxThreads: count,
+      idleTimeout: Infinity,
+      concurrentTasksPerWorker: 1,
+      resourceLimits: {maxOldGenerationSizeMb: HEAP},
+      recordTiming: false,
+    });
+  }
+
+  /** @throws ServiceError if the request is refused */
+  async do<T extends Task>(task: T, moved: readonly ArrayBuffer[] = []): Promise<ResultOf<T>> {
+    const response = await this.#pool.run(task, {transferList: [...moved]});
+    if ('result' in response) return response.result as ResultOf<T>;
+    const {code, message, errors, errorCount} = response.refusal;
+    throw new ServiceError(code, message, {errors, errorCount});
+  }
+
+  async close(): Promise<void> {
+    await this.#pool.destroy();
+  }
+}
+
+/** The compiled worker; from sources, the TypeScript one with tsx registered in the thread. */
+function workerFile(): {filename: string; execArgv?: string[]} {
+  const isSource = import.meta.url.endsWith('.ts');
+  const filename = fileURLToPath(
+    new URL(isSource ? './worker.ts' : './worker.js', import.meta.url),
+  );
+  if (!isSource) return {filename};
+  // Node 20 loads no TypeScript, and threads do not get --import tsx of the main one.
+  const api = createRequire(import.meta.url)
+    .resolve('tsx/esm/api')
+    .replace(/cjs$/, 'mjs');
+  const script = `import {register} from ${JSON.stringify(pathToFileURL(api).href)}; register();`;
+  return {filename, execArgv: ['--import', `data:text/javascript,${encodeURIComponent(script)}`]};
+}
