@@ -36,7 +36,7 @@ await migrate(database);
 const released = releaseAbandoned(database.driver, new Date());
 if (released > 0) log.warn({released}, 'reservations of an earlier run were released');
 const demo = config.isDemo ? await prepareDemo(config, database, new Date()) : null;
-const engine = await createEngine({
+const engine = createEngine({
   threads: config.threads,
   limits: config.limits,
   maxQueue: config.limits.queuedCalls,

@@ -26,7 +26,7 @@ export async function migrate(
   if (error) {
     const failed = results?.find(result => result.status === 'Error')?.migrationName;
     const step = failed ? `migration ${failed} failed: ` : 'the schema can not be migrated: ';
-    throw new Error(step + (error instanceof Error ? error.message : String(error)));
+    throw new Error(step + (error instanceof Error ? error.message : 'unknown fault'));
   }
   const broken: unknown = driver.pragma('foreign_key_check');
   if (Array.isArray(broken) && broken.length > 0) {

@@ -56,7 +56,7 @@ export function statement<Parameters extends unknown[], Row>(
   sql: string,
 ): Sqlite.Statement<Parameters, Row> {
   let statements = prepared.get(driver);
-  if (!statements) prepared.set(driver, (statements = new Map()));
+  if (!statements) prepared.set(driver, (statements = new Map<string, Sqlite.Statement>()));
   let found = statements.get(sql);
   if (!found) statements.set(sql, (found = driver.prepare(sql)));
   return found as Sqlite.Statement<Parameters, Row>;

@@ -1,4 +1,4 @@
-import type {ConsoleOperation, Operation} from '../../shared/api.ts';
+import type {Operation} from '../../shared/api.ts';
 import type {Deps} from '../deps.ts';
 import {keyOf, personOf, type Call, type Handler, type Reply} from '../http/call.ts';
 import {CONSOLE} from '../ledger/entries.ts';
@@ -41,7 +41,7 @@ export const createEstimates =
 export const createConsoleRequest =
   (deps: Deps): Handler<'createConsoleRequest'> =>
   async call => {
-    const operation = call.path.operation as ConsoleOperation;
+    const {operation} = call.path;
     if (operation === 'estimates') return {body: await deps.engine.estimate(call.bytes)};
     const {accountId, personId} = personOf(call);
     const {bytes, pairs} = await compute(deps, {

@@ -1,0 +1,28 @@
+import {defineConfig} from 'vitest/config';
+
+const common = {environment: 'node', testTimeout: 60_000, hookTimeout: 60_000} as const;
+
+export default defineConfig({
+  test: {
+    projects: [
+      {
+        test: {
+          ...common,
+          name: 'server',
+          include: ['tests/**/*.test.ts'],
+          exclude: ['tests/browser/**'],
+        },
+      },
+      {
+        test: {
+          ...common,
+          name: 'browser',
+          include: ['tests/browser/**/*.test.ts'],
+          testTimeout: 180_000,
+          hookTimeout: 180_000,
+          fileParallelism: false,
+        },
+      },
+    ],
+  },
+});
