@@ -1,0 +1,45 @@
+import type {Routes} from '@angular/router';
+import {sessionGuard} from './session/session-guard';
+
+export const routes: Routes = [
+  {
+    path: 'sign-in',
+    title: 'Sign in',
+    loadComponent: () => import('./session/sign-in-page').then(page => page.SignInPage),
+  },
+  {
+    path: '',
+    loadComponent: () => import('./frame/frame').then(frame => frame.Frame),
+    children: [
+      {path: '', pathMatch: 'full', redirectTo: 'requests'},
+      {
+        path: 'requests',
+        title: 'Requests',
+        canActivate: [sessionGuard],
+        loadComponent: () => import('./requests/requests-page').then(page => page.RequestsPage),
+      },
+      {
+        path: 'usage',
+        title: 'Usage',
+        canActivate: [sessionGuard],
+        loadComponent: () => import('./usage/usage-page').then(page => page.UsagePage),
+      },
+      {
+        path: 'keys',
+        title: 'Keys',
+        canActivate: [sessionGuard],
+        loadComponent: () => import('./keys/keys-page').then(page => page.KeysPage),
+      },
+      {
+        path: 'reference',
+        loadChildren: () =>
+          import('./reference/reference.routes').then(file => file.referenceRoutes),
+      },
+      {
+        path: '**',
+        title: 'Not found',
+        loadComponent: () => import('./states/not-found-page').then(page => page.NotFoundPage),
+      },
+    ],
+  },
+];

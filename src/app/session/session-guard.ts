@@ -1,0 +1,19 @@
+import {inject} from '@angular/core';
+import {Router, type CanActivateFn} from '@angular/router';
+import {Session} from './session';
+
+/** Lets the signed-in through and sends everybody else to sign in, with the way back. */
+export const sessionGuard: CanActivateFn = async (_route, {url}) => {
+  const session = inject(Session);
+  const router = inject(Router);
+  await session.restore();
+  if (session.person() !== null) return true;
+  return router.createUrlTree(['/sign-in'], url === '/' ? {} : {queryParams: {returnTo: url}});
+};
+
+/** A page of this console that `returnTo` names; anything else is the start page. */
+export function safeReturnTo(returnTo: string | null | undefined): string {
+  return returnTo && /^\/(?![/\\])/.test(returnTo) && !returnTo.startsWith('/sign-in')
+    ? returnTo
+    : '/';
+}
