@@ -19,6 +19,8 @@ export interface Unit {
   readonly factor: number;
   /** Powers of ten divided by on the way in; |power| ≤ 22, where they are exact doubles. */
   readonly power: number;
+  /** 10^|power| */
+  readonly scale: number;
   /** Roundings of one conversion, the same in both directions; 0 for the SI unit itself. */
   readonly roundings: number;
   readonly toSI: (value: number) => number;
@@ -31,13 +33,14 @@ function unit(symbol: string, power = 0, factor = 1): Unit {
   const scale = 10 ** Math.abs(power);
   const roundings = (power === 0 ? 0 : 1) + (factor === 1 ? 0 : 1);
   if (roundings === 0) {
-    return {symbol, factor, power, roundings, toSI: identity, fromSI: identity};
+    return {symbol, factor, power, scale, roundings, toSI: identity, fromSI: identity};
   }
   return power >= 0
     ? {
         symbol,
         factor,
         power,
+        scale,
         roundings,
         toSI: value => (value * factor) / scale,
         fromSI: value => (value * scale) / factor,
@@ -46,6 +49,7 @@ function unit(symbol: string, power = 0, factor = 1): Unit {
         symbol,
         factor,
         power,
+        scale,
         roundings,
         toSI: value => value * factor * scale,
         fromSI: value => value / scale / factor,

@@ -1,5 +1,6 @@
 import {unitOf, type Unit} from '../../shared/units.ts';
 import {symbolOf, type Columns, type FilledRequest} from './filled-request.ts';
+import type {Memory} from './memory.ts';
 import {packPlacement, type PackedPlacement} from './placement.ts';
 import {conversionRemainder, convert, place, position} from './positions.ts';
 import {chargeColumns, TINY_CHARGE, type ChargeColumns} from './sources/charge-columns.ts';
@@ -12,7 +13,7 @@ export interface PackedAssembly {
   readonly placements: readonly PackedPlacement[];
 }
 
-export function packAssembly(request: FilledRequest): PackedAssembly {
+export function packAssembly(request: FilledRequest, memory: Memory): PackedAssembly {
   const length = unitOf('length', symbolOf(request, 'length'));
   const charge = unitOf('charge', symbolOf(request, 'charge'));
   const placements = request.bodies.map(body => packPlacement(body.placement, length));
@@ -20,7 +21,7 @@ export function packAssembly(request: FilledRequest): PackedAssembly {
   for (const body of request.bodies) {
     starts.push(starts[starts.length - 1] + body.charges.x.length);
   }
-  const charges = chargeColumns(starts[starts.length - 1]);
+  const charges = chargeColumns(starts[starts.length - 1], memory);
   const extremes = {largestRadius: 0, hasTiny: false};
   request.bodies.forEach((body, index) => {
     fill(charges, starts[index], body.charges, length, charge, placements[index], extremes);
@@ -29,11 +30,11 @@ export function packAssembly(request: FilledRequest): PackedAssembly {
 }
 
 /** Charges that are in the common frame already: the probes of a force request. */
-export function packProbes(request: FilledRequest): ChargeColumns | undefined {
+export function packProbes(request: FilledRequest, memory: Memory): ChargeColumns | undefined {
   if (!request.probes) return undefined;
   const length = unitOf('length', symbolOf(request, 'length'));
   const charge = unitOf('charge', symbolOf(request, 'charge'));
-  const charges = chargeColumns(request.probes.x.length);
+  const charges = chargeColumns(request.probes.x.length, memory);
   const extremes = {largestRadius: 0, hasTiny: false};
   fill(charges, 0, request.probes, length, charge, packPlacement(undefined, length), extremes);
   return {...charges, ...extremes};

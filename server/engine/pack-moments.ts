@@ -1,6 +1,7 @@
 import {unitOf} from '../../shared/units.ts';
 import {answerHeader} from './answers/header.ts';
 import {symbolOf} from './filled-request.ts';
+import type {Memory} from './memory.ts';
 import type {PackedCall} from './pack.ts';
 import {packPlacement} from './placement.ts';
 import {place, position} from './positions.ts';
@@ -12,13 +13,11 @@ const STRIDE = 4;
  * Moments need no constant of nature, so they are computed in the request's own units of charge and
  * length: whole numbers stay whole.
  */
-export function packMoments(plan: Plan): PackedCall {
+export function packMoments(plan: Plan, memory: Memory): PackedCall {
   const {request, sources} = plan;
   const length = unitOf('length', symbolOf(request, 'length'));
   const metre = unitOf('length', 'm');
-  const charges = new Float64Array(
-    new SharedArrayBuffer(STRIDE * sources * Float64Array.BYTES_PER_ELEMENT),
-  );
+  const charges = memory(STRIDE * sources);
   const starts = [0];
   const at = position();
   const used = request.bodies.map(body => packPlacement(body.placement, length));

@@ -3,6 +3,7 @@ import {answerHeader, type AnswerHeader} from './answers/header.ts';
 import {totalOf} from './compensated-sum.ts';
 import {symbolOf, type FilledRequest} from './filled-request.ts';
 import {FIELD_COLUMNS, FORCE_STRIDE, type FieldColumn, type Job} from './jobs.ts';
+import {ownMemory, sharedMemory, type Memory} from './memory.ts';
 import type {BoundKind, SumKind} from './methods/direct-sum.ts';
 import {packAssembly, packProbes, type PackedAssembly} from './pack-charges.ts';
 import {packMoments} from './pack-moments.ts';
@@ -19,25 +20,22 @@ export interface PackedCall {
 /** Up to here bounds are made of the rounding errors themselves, above of worst cases. */
 const PAIRS_WITH_ERRORS = 1e8;
 
-/** Blocks take some 10 ms, so that calls share the threads fairly and stop soon. */
-const PAIRS_PER_BLOCK = 2e6;
-const PAIRS_PER_BLOCK_WITH_ERRORS = 3e5;
+/** Evaluations that make a block: some 20 ms, so that calls share the threads and stop soon. */
+const PER_BLOCK: Record<BoundKind, number> = {none: 1.6e6, errors: 2.4e5, magnitudes: 6e5};
 const TARGETS_PER_BLOCK = 16_384;
 
 export function pack(plan: Plan): PackedCall {
+  const memory = plan.route === 'inline' ? ownMemory : sharedMemory;
   switch (plan.operation) {
     case 'potentials':
     case 'fields':
-      return packFields(plan);
+      return packFields(plan, memory);
     case 'forces':
-      return packForces(plan);
+      return packForces(plan, memory);
     case 'moments':
-      return packMoments(plan);
+      return packMoments(plan, memory);
   }
 }
-
-const shared = (length: number): Float64Array =>
-  new Float64Array(new SharedArrayBuffer(length * Float64Array.BYTES_PER_ELEMENT));
 
 function boundKind(hasBounds: boolean, pairs: number): BoundKind {
   if (!hasBounds) return 'none';
@@ -46,8 +44,7 @@ function boundKind(hasBounds: boolean, pairs: number): BoundKind {
 
 /** How many targets make a block: from the size of the call, never from the number of threads. */
 function targetsPerBlock(sources: number, bounds: BoundKind): number {
-  const pairs = bounds === 'errors' ? PAIRS_PER_BLOCK_WITH_ERRORS : PAIRS_PER_BLOCK;
-  return Math.max(1, Math.min(TARGETS_PER_BLOCK, Math.floor(pairs / sources)));
+  return Math.max(1, Math.min(TARGETS_PER_BLOCK, Math.floor(PER_BLOCK[bounds] / sources)));
 }
 
 /** Appends the starts of the blocks of `from` … `to` − 1. */
@@ -55,9 +52,9 @@ function appendBlocks(blocks: number[], from: number, to: number, size: number):
   for (let start = from; start < to; start += size) blocks.push(start);
 }
 
-function packFields(plan: Plan): PackedCall {
+function packFields(plan: Plan, memory: Memory): PackedCall {
   const {request, sources, targets: count} = plan;
-  const assembly = packAssembly(request);
+  const assembly = packAssembly(request, memory);
   const length = unitOf('length', symbolOf(request, 'length'));
   if (!request.targets) throw new RangeError('expected targets');
   const columns = fieldColumns(request);
@@ -71,7 +68,7 @@ function packFields(plan: Plan): PackedCall {
       kind: 'field',
       charges: assembly.charges,
       starts: assembly.starts,
-      targets: packTargets(request.targets, length),
+      targets: packTargets(request.targets, length, memory),
       count,
       sum: sumKind(request),
       bounds,
@@ -86,7 +83,7 @@ function packFields(plan: Plan): PackedCall {
       coincidenceDistance: length.toSI(request.coincidenceDistance ?? 0),
       onCoincidence: request.onCoincidence ?? 'mask',
       blocks,
-      out: shared(columns.length * count),
+      out: memory(columns.length * count),
     },
   };
 }
@@ -127,10 +124,10 @@ function fieldColumns({quantities = [], accuracy}: FilledRequest): FieldColumn[]
   return FIELD_COLUMNS.filter(isAnswered);
 }
 
-function packForces(plan: Plan): PackedCall {
+function packForces(plan: Plan, memory: Memory): PackedCall {
   const {request, sources, work, targets, hasInteractions} = plan;
-  const assembly = packAssembly(request);
-  const probes = packProbes(request);
+  const assembly = packAssembly(request, memory);
+  const probes = packProbes(request, memory);
   const include = request.include ?? [];
   const hasBounds = request.accuracy?.bounds === true;
   const bounds = boundKind(hasBounds, work);
@@ -164,7 +161,7 @@ function packForces(plan: Plan): PackedCall {
       ...momentArms(request, assembly),
       totalCharges: request.bodies.map(body => totalOf(body.charges.charge)),
       blocks,
-      out: shared(FORCE_STRIDE * targets),
+      out: memory(FORCE_STRIDE * targets),
     },
   };
 }

@@ -27,7 +27,7 @@ export const position = (): Position => ({
 export function conversionRemainder(unit: Unit, value: number): number {
   if (unit.roundings === 0 || value === 0) return 0;
   const converted = unit.toSI(value);
-  const scale = 10 ** Math.abs(unit.power);
+  const {scale} = unit;
   const scaled = value * unit.factor;
   const lost = unit.factor === 1 ? 0 : productError(value, unit.factor, scaled);
   return unit.power >= 0

@@ -1,6 +1,7 @@
 import type {Targets} from '../../shared/api.ts';
 import type {Unit} from '../../shared/units.ts';
 import {gridNode, packGrid, type PackedGrid} from './grid.ts';
+import type {Memory} from './memory.ts';
 import {packPath, pathSample, type PackedPath} from './path.ts';
 import {convert, position, type Position} from './positions.ts';
 
@@ -15,12 +16,12 @@ export interface PackedPoints {
 
 export type PackedTargets = PackedPoints | PackedGrid | PackedPath;
 
-export function packTargets(targets: Targets, unit: Unit): PackedTargets {
+export function packTargets(targets: Targets, unit: Unit, memory: Memory): PackedTargets {
   if (targets.grid) return packGrid(targets.grid, unit);
   if (targets.path) return packPath(targets.path, unit);
   const points = targets.points;
   if (!points) throw new RangeError('expected points, a grid or a path');
-  const values = sharedPositions(points.x.length);
+  const values = memory(POSITION_STRIDE * points.x.length);
   const at = position();
   for (let i = 0; i < points.x.length; i++) {
     convert(unit, points.x[i], points.y[i], points.z[i], at);
@@ -28,10 +29,6 @@ export function packTargets(targets: Targets, unit: Unit): PackedTargets {
   }
   return {kind: 'points', values};
 }
-
-/** Zeros for `count` positions, in memory that all threads can read. */
-export const sharedPositions = (count: number): Float64Array =>
-  new Float64Array(new SharedArrayBuffer(POSITION_STRIDE * count * Float64Array.BYTES_PER_ELEMENT));
 
 export function storePosition(values: Float64Array, index: number, p: Position): void {
   const start = POSITION_STRIDE * index;

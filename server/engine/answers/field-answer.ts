@@ -7,6 +7,7 @@ import {answerTail, usedCoincidenceDistance, type AnswerHeader, type Timing} fro
 
 /** Values written between two looks at `Stop`: a few milliseconds. */
 const CHUNK = 8192;
+const FLUSH = 65_536;
 
 /**
  * Writes the answer of a field job, whose blocks are all done, as JSON.
@@ -25,12 +26,20 @@ export function fieldAnswer(
   canonicalNaN(job.out);
   checkOverflow(header, job, reports);
 
-  const columns = job.columns.map(name => [`${name}`, columnParts(job, name, stop)] as const);
-  if (stop()) return undefined;
   const parts: Uint8Array[] = [];
-  columns.forEach(([name, values], index) => {
-    parts.push(bytes(`${index === 0 ? '{"columns":{' : ','}"${name}":[`), ...values, bytes(']'));
-  });
+  let text = '{"columns":{';
+  for (let column = 0; column < job.columns.length; column++) {
+    text += `${column === 0 ? '' : '],'}"${job.columns[column]}":[`;
+    for (let from = 0; from < job.count; from += CHUNK) {
+      const start = column * job.count + from;
+      const end = Math.min(start + CHUNK, (column + 1) * job.count);
+      text += `${from === 0 ? '' : ','}${numbers(job.out, start, end)}`;
+      if (text.length < FLUSH) continue;
+      if (stop()) return undefined;
+      parts.push(Buffer.from(text, 'latin1'));
+      text = '';
+    }
+  }
   let reach = 0;
   for (const report of reports) reach = Math.max(reach, report.reach);
   const rest = {
@@ -38,27 +47,16 @@ export function fieldAnswer(
     units: header.units,
     coincident: coincidences(header, job, reports),
     coincidentCount: coincidentCount(reports),
-    ...answerTail(header, usedCoincidenceDistance(header, reach), resultDigest(job.out), timing),
   };
-  parts.push(bytes(`},${JSON.stringify(rest).slice(1)}`));
-  return Buffer.concat(parts);
+  const used = usedCoincidenceDistance(header, reach);
+  const tail = answerTail(header, used, resultDigest(job.out), timing);
+  const last = Buffer.from(`${text}]},${JSON.stringify(rest).slice(1, -1)}${tail}`, 'utf8');
+  return parts.length === 0 ? last : Buffer.concat([...parts, last]);
 }
 
-const bytes = (text: string): Uint8Array => Buffer.from(text, 'utf8');
-
-function columnParts(job: FieldJob, name: string, stop: Stop): Uint8Array[] {
-  const start = job.columns.indexOf(name as FieldJob['columns'][number]) * job.count;
-  const parts: Uint8Array[] = [];
-  for (let from = 0; from < job.count && !stop(); from += CHUNK) {
-    const to = Math.min(from + CHUNK, job.count);
-    // The digits of Number are the shortest that give the same double back, and are JSON but for NaN.
-    const text = job.out
-      .subarray(start + from, start + to)
-      .join(',')
-      .replaceAll('NaN', 'null');
-    parts.push(bytes(from === 0 ? text : `,${text}`));
-  }
-  return parts;
+/** The digits of Number are the shortest that give the same double back, and are JSON but for NaN. */
+function numbers(values: Float64Array, start: number, end: number): string {
+  return values.subarray(start, end).join(',').replaceAll('NaN', 'null');
 }
 
 const coincidentCount = (reports: readonly BlockReport[]): number =>

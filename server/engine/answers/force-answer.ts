@@ -57,12 +57,9 @@ export function forceAnswer(
   if (!numbers.every(Number.isFinite)) {
     throw new ServiceError('number-overflow', 'a force is larger than a double can hold');
   }
-  const answer = {
-    ...values,
-    units: header.units,
-    ...answerTail(header, usedCoincidenceDistance(header, reach), resultDigest(numbers), timing),
-  };
-  return Buffer.from(JSON.stringify(answer), 'utf8');
+  const text = JSON.stringify({...values, units: header.units}).slice(0, -1);
+  const used = usedCoincidenceDistance(header, reach);
+  return Buffer.from(text + answerTail(header, used, resultDigest(numbers), timing), 'utf8');
 }
 
 function bodyForce(

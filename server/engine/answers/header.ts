@@ -71,24 +71,24 @@ export function usedCoincidenceDistance(header: AnswerHeader, reach: number): nu
 
 const toMicroseconds = (milliseconds: number): number => Math.round(milliseconds * 1000) / 1000;
 
-/** The members that all answers end with. */
+const ENGINE = JSON.stringify({version: ENGINE_VERSION, constants: CONSTANTS_EDITION});
+const NOTICES = JSON.stringify(notices);
+
+/** The members that all answers end with, from a comma to the closing brace. */
 export function answerTail(
   header: AnswerHeader,
   coincidenceDistance: number,
   resultDigest: string,
   timing: Timing,
-) {
-  return {
-    accuracy: {method: 'direct', coincidenceDistance},
-    ...(header.placements.length > 0 && {placements: header.placements}),
-    cost: {
-      pairs: header.pairs,
-      queuedMilliseconds: toMicroseconds(timing.queuedMilliseconds),
-      computedMilliseconds: toMicroseconds(timing.computedMilliseconds),
-    },
-    engine: {version: ENGINE_VERSION, constants: CONSTANTS_EDITION},
-    inputDigest: header.inputDigest,
-    resultDigest,
-    notices,
-  };
+): string {
+  const accuracy = JSON.stringify({method: 'direct', coincidenceDistance});
+  const placements =
+    header.placements.length > 0 ? `,"placements":${JSON.stringify(header.placements)}` : '';
+  const cost = JSON.stringify({
+    pairs: header.pairs,
+    queuedMilliseconds: toMicroseconds(timing.queuedMilliseconds),
+    computedMilliseconds: toMicroseconds(timing.computedMilliseconds),
+  });
+  const digests = `"inputDigest":"${header.inputDigest}","resultDigest":"${resultDigest}"`;
+  return `,"accuracy":${accuracy}${placements},"cost":${cost},"engine":${ENGINE},${digests},"notices":${NOTICES}}`;
 }

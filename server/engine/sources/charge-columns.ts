@@ -1,3 +1,5 @@
+import type {Memory} from '../memory.ts';
+
 /**
  * Point charges, packed: SI columns of one length, bodies one after the other.
  *
@@ -31,11 +33,10 @@ export const TINY_CHARGE = 1e-200;
 
 const COLUMNS = 9;
 
-/** Zeros, in memory that all threads can read. */
-export function chargeColumns(count: number): ChargeColumns {
-  const buffer = new SharedArrayBuffer(COLUMNS * count * Float64Array.BYTES_PER_ELEMENT);
-  const column = (index: number): Float64Array =>
-    new Float64Array(buffer, index * count * Float64Array.BYTES_PER_ELEMENT, count);
+/** Columns of zeros. */
+export function chargeColumns(count: number, memory: Memory): ChargeColumns {
+  const all = memory(COLUMNS * count);
+  const column = (index: number): Float64Array => all.subarray(index * count, (index + 1) * count);
   return {
     count,
     x: column(0),
