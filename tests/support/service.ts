@@ -10,11 +10,12 @@ import {hashPassword} from '../../server/accounts/passwords.ts';
 import * as people from '../../server/accounts/people.ts';
 import {readConfig, type Limits} from '../../server/config.ts';
 import {migrate} from '../../server/db/migrate.ts';
-import {openDatabase} from '../../server/db/open.ts';
+import {openDatabase, type Database} from '../../server/db/open.ts';
 import type {Deps} from '../../server/deps.ts';
 import {createEngine} from '../../server/engine/pool.ts';
 import {createHttpServer} from '../../server/http/server.ts';
 import * as apiKeys from '../../server/ledger/api-keys.ts';
+import {releaseAbandoned} from '../../server/ledger/entries.ts';
 import type {CreatedKey, NewKey, Operation, Role, Session} from '../../shared/api.ts';
 
 export const PASSWORD = 'a password for tests only';
@@ -24,6 +25,8 @@ export interface ServiceOptions {
   readonly env?: NodeJS.ProcessEnv;
   readonly allowance?: number;
   readonly now?: () => Date;
+  /** One that was stopped: starts again on its data, with its account and key. */
+  readonly after?: TestService;
 }
 
 /** A signed-in person, for calls of the console. */
@@ -51,13 +54,17 @@ export interface TestService {
   /** The same, for an answer that has to be a success. */
   call<Answer>(operation: Operation | 'estimates', body: unknown): Promise<Answer>;
   signIn(role: Role): Promise<Visitor>;
+  /** Ends the service as a crash would, and leaves its data. */
+  stop(): Promise<void>;
+  /** Ends it, if it was not stopped, and removes its data. */
   close(): Promise<void>;
 }
 
 let passwordHash: Promise<string> | undefined;
 
 export async function startService(options: ServiceOptions = {}): Promise<TestService> {
-  const dataDir = mkdtempSync(join(tmpdir(), 'fieldstead-'));
+  const {after} = options;
+  const dataDir = after?.deps.config.dataDir ?? mkdtempSync(join(tmpdir(), 'fieldstead-'));
   const now = options.now ?? (() => new Date());
   const env = {THREADS: '2', PORT: '0', DATA_DIR: dataDir, ...options.env};
   const config = readConfig(env, {strangerCalls: 100_000, ...options.limits});
@@ -70,6 +77,7 @@ export async function startService(options: ServiceOptions = {}): Promise<TestSe
   });
   const database = openDatabase(join(dataDir, 'fieldstead.sqlite'));
   await migrate(database);
+  releaseAbandoned(database.driver, now());
   const engine = createEngine({
     threads: config.threads,
     limits: config.limits,
@@ -80,19 +88,7 @@ export async function startService(options: ServiceOptions = {}): Promise<TestSe
   await new Promise<void>(done => server.listen(0, '127.0.0.1', done));
   const baseUrl = `http://127.0.0.1:${(server.address() as AddressInfo).port}`;
 
-  const accountId = await people.openAccount(
-    database,
-    {name: 'Test account', allowance: options.allowance ?? 1e13},
-    now(),
-  );
-  passwordHash ??= hashPassword(PASSWORD);
-  for (const role of ['reader', 'developer', 'owner', 'admin'] as const) {
-    await people.addPerson(
-      database,
-      {accountId, email: emailOf(role), name: role, role, passwordHash: await passwordHash},
-      now(),
-    );
-  }
+  const accountId = after?.accountId ?? (await addAccount(database, options.allowance, now()));
   const makeKey = (wanted: Partial<NewKey> = {}): Promise<CreatedKey> =>
     apiKeys.create(
       database,
@@ -100,7 +96,7 @@ export async function startService(options: ServiceOptions = {}): Promise<TestSe
       {name: 'Test key', scopes: ['compute:run', 'usage:read'], burst: 1_000_000, ...wanted},
       now(),
     );
-  const key = await makeKey();
+  const key = after?.key ?? (await makeKey());
 
   const post: TestService['post'] = (operation, body, headers = {}) =>
     fetch(`${baseUrl}/v1/${operation}`, {
@@ -112,6 +108,15 @@ export async function startService(options: ServiceOptions = {}): Promise<TestSe
       },
       body: typeof body === 'string' ? body : JSON.stringify(body),
     });
+
+  let stopped: Promise<void> | undefined;
+  const stop = (): Promise<void> =>
+    (stopped ??= (async () => {
+      server.closeAllConnections();
+      await new Promise(done => server.close(done));
+      await engine.close();
+      await database.close();
+    })());
 
   return {
     baseUrl,
@@ -129,17 +134,37 @@ export async function startService(options: ServiceOptions = {}): Promise<TestSe
       return answer as Answer;
     },
     signIn: role => signIn(baseUrl, role),
+    stop,
     async close() {
-      server.closeAllConnections();
-      await new Promise(done => server.close(done));
-      await engine.close();
-      await database.close();
+      await stop();
       rmSync(dataDir, {recursive: true, force: true});
     },
   };
 }
 
-const emailOf = (role: Role): string => `${role}@test.example`;
+/** An account with a person of each role. @returns its id */
+async function addAccount(
+  database: Database,
+  allowance: number | undefined,
+  now: Date,
+): Promise<string> {
+  const accountId = await people.openAccount(
+    database,
+    {name: 'Test account', allowance: allowance ?? 1e13},
+    now,
+  );
+  passwordHash ??= hashPassword(PASSWORD);
+  for (const role of ['reader', 'developer', 'owner', 'admin'] as const) {
+    await people.addPerson(
+      database,
+      {accountId, email: emailOf(role), name: role, role, passwordHash: await passwordHash},
+      now,
+    );
+  }
+  return accountId;
+}
+
+export const emailOf = (role: Role): string => `${role}@test.example`;
 
 async function signIn(baseUrl: string, role: Role): Promise<Visitor> {
   const response = await fetch(`${baseUrl}/console/session`, {
