@@ -100,17 +100,19 @@ const statements: readonly string[] = [
     PRIMARY KEY (account_id, day, source_id, operation)
   ) STRICT, WITHOUT ROWID`,
 
-  `CREATE TRIGGER ledger_entry_moves_balances AFTER INSERT ON ledger_entry BEGIN
-    INSERT INTO balance (month, account_id, lineage_id, settled, held)
-    SELECT substr(new.day, 1, 7), new.account_id, part.lineage_id,
-      CASE WHEN new.kind IN ('charge', 'settle') THEN new.pairs ELSE 0 END,
-      CASE WHEN new.kind = 'reserve' THEN new.pairs ELSE 0 END
-    FROM (SELECT '' AS lineage_id UNION ALL SELECT new.lineage_id) AS part
-    WHERE true
-    ON CONFLICT (month, account_id, lineage_id) DO UPDATE SET
-      settled = settled + CASE WHEN new.kind IN ('charge', 'settle') THEN new.pairs ELSE 0 END,
-      held = held + CASE new.kind WHEN 'reserve' THEN new.pairs WHEN 'charge' THEN 0 ELSE -new.pairs END;
-  END`,
+  ...["''", 'new.lineage_id'].map(
+    (
+      lineage,
+      index,
+    ) => `CREATE TRIGGER ledger_entry_moves_balance_${index} AFTER INSERT ON ledger_entry BEGIN
+      INSERT INTO balance (month, account_id, lineage_id, settled, held)
+      VALUES (substr(new.day, 1, 7), new.account_id, ${lineage},
+        iif(new.kind IN ('charge', 'settle'), new.pairs, 0), iif(new.kind = 'reserve', new.pairs, 0))
+      ON CONFLICT (month, account_id, lineage_id) DO UPDATE SET
+        settled = settled + excluded.settled,
+        held = held + CASE new.kind WHEN 'reserve' THEN new.pairs WHEN 'charge' THEN 0 ELSE -new.pairs END;
+    END`,
+  ),
   `CREATE TRIGGER ledger_entry_counts_usage AFTER INSERT ON ledger_entry
     WHEN new.kind IN ('charge', 'settle') BEGIN
     INSERT INTO usage_day (account_id, day, source_id, operation, calls, pairs, last_at)

@@ -11,6 +11,7 @@ import type {Deps} from './deps.ts';
 import {createEngine} from './engine/pool.ts';
 import {createHttpServer} from './http/server.ts';
 import {releaseAbandoned} from './ledger/entries.ts';
+import {GroupCommit} from './ledger/group-commit.ts';
 import {forgetOld} from './ledger/idempotency.ts';
 
 const DRAIN_MILLISECONDS = 30_000;
@@ -41,7 +42,8 @@ const engine = createEngine({
   limits: config.limits,
   maxQueue: config.limits.queuedCalls,
 });
-const deps: Deps = {config, database, engine, log, now: () => new Date()};
+const groupCommit = new GroupCommit(database.driver);
+const deps: Deps = {config, database, engine, groupCommit, log, now: () => new Date()};
 const server = createHttpServer(deps);
 await new Promise<void>((done, fail) => {
   server.once('error', fail);

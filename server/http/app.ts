@@ -9,6 +9,7 @@ import type {Deps} from '../deps.ts';
 import {ServiceError} from '../errors.ts';
 import {createRoutes} from '../routes/index.ts';
 import {Bursts} from './burst.ts';
+import {keepHeaders, setHeaders} from './common-headers.ts';
 import {factsOf} from './facts.ts';
 import {mountOperations} from './mount.ts';
 import {mountPages} from './pages.ts';
@@ -31,9 +32,7 @@ export function createApp(deps: Deps): Express {
   app.use((req, res, next) => {
     const ids = requestIds(req);
     Object.assign(res.locals, ids);
-    res.setHeader('X-Request-Id', ids.requestId);
-    res.setHeader('traceparent', ids.traceparent);
-    for (const [name, value] of common) res.setHeader(name, value);
+    keepHeaders(res, ids, common);
     logWhenDone(deps, req, res);
     if (req.url.length > config.limits.urlBytes) {
       throw new ServiceError(
@@ -48,6 +47,7 @@ export function createApp(deps: Deps): Express {
     next();
   });
   mountOperations(app, deps, createRoutes(deps), new Bursts(config.limits.strangerCalls));
+  app.use(setHeaders);
   mountPages(app, deps);
   app.use((): never => {
     throw new ServiceError('not-found', 'There is nothing at this address.');
@@ -91,7 +91,9 @@ function problemWriter({config, log}: Deps): ErrorRequestHandler {
       res.destroy();
       return;
     }
-    if (!req.complete) res.setHeader('Connection', 'close');
+    // Who asked for a 100 may now leave the body out. Anybody else sends on, and must not meet a
+    // closed socket before the answer was seen.
+    if (!req.complete && req.headers.expect !== undefined) res.setHeader('Connection', 'close');
     discardRest(req, config.limits.discardBytes, config.limits.discardMilliseconds);
     writeProblem(res, error, config.publicUrl, facts.requestId);
   };

@@ -10,6 +10,7 @@ import type {BurstState, Bursts} from './burst.ts';
 import type {Call, Caller, Handler, Reply, Routes} from './call.ts';
 import {createCallerCheck, refuseKeyInBody} from './callers.ts';
 import {factsOf} from './facts.ts';
+import {headersOf} from './common-headers.ts';
 import {createParameterCheck} from './parameters.ts';
 import {rateLimitFields} from './rate-limit-fields.ts';
 import {createBodyReader} from './read-body.ts';
@@ -107,7 +108,10 @@ function mountOne(
       bytes,
       idempotencyKey: idempotencyKeyOf(req),
       address: req.ip ?? '',
-      signal: signalOf(res),
+      // Made when it is asked for: small calls are over before anybody could leave.
+      get signal() {
+        return signalOf(res);
+      },
       at,
     } as unknown as Call<OperationId>;
     const reply = await handle(call);
@@ -152,6 +156,7 @@ function idempotencyKeyOf(req: Request): string | null {
 /** Aborts when the response closes before it is finished. The request closes as soon as it is read. */
 function signalOf(res: Response): AbortSignal {
   const controller = new AbortController();
+  if (res.destroyed) controller.abort();
   res.once('close', () => {
     if (!res.writableFinished) controller.abort();
   });
@@ -167,7 +172,11 @@ function send(
 ): void {
   const status = reply.status ?? 200;
   const bytes = reply.bytes ?? (reply.body ? Buffer.from(JSON.stringify(reply.body)) : null);
-  const headers: Record<string, string | number> = {'Cache-Control': 'no-store', ...reply.headers};
+  const headers: Record<string, string | number> = {
+    ...headersOf(res),
+    'Cache-Control': 'no-store',
+    ...reply.headers,
+  };
   if (bytes) {
     headers['Content-Type'] = JSON_TYPE;
     headers['Content-Length'] = bytes.length;

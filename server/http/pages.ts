@@ -49,7 +49,7 @@ function mountReference(app: Express, headers: Headers): void {
 }
 
 function sendPage(res: Response, headers: Headers, page: string | Buffer): void {
-  for (const [name, value] of headers) res.setHeader(name, value);
+  for (const [name, value] of Object.entries(headers)) res.setHeader(name, value);
   res.setHeader('Cache-Control', 'no-cache');
   res.type('html').end(page);
 }

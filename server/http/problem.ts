@@ -3,11 +3,12 @@ import type {Response} from 'express';
 import type {Problem, ProblemCode} from '../../shared/api.ts';
 import {problemCatalogue} from '../../shared/problem-catalogue.ts';
 import {ServiceError} from '../errors.ts';
+import {headersOf} from './common-headers.ts';
 
 const REALM = 'realm="fieldstead"';
 
 /** Headers that go with a problem: challenges (RFC 6750 §3), what would be accepted, when to retry. */
-function headersOf(error: ServiceError): Record<string, string> {
+function headersFor(error: ServiceError): Record<string, string> {
   const headers: Record<string, string> = {};
   switch (error.code) {
     case 'key-required':
@@ -74,7 +75,8 @@ export function writeProblem(
   const problem = problemOf(error, publicUrl, requestId);
   const body = Buffer.from(JSON.stringify(problem));
   res.writeHead(problem.status, {
-    ...headersOf(error),
+    ...headersOf(res),
+    ...headersFor(error),
     'Content-Type': 'application/problem+json',
     'Content-Length': body.length,
     'Cache-Control': 'no-store',

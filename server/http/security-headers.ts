@@ -1,7 +1,7 @@
 import helmet, {type HelmetOptions} from 'helmet';
 import type {IncomingMessage, ServerResponse} from 'node:http';
 
-export type Headers = readonly (readonly [string, string])[];
+export type Headers = Readonly<Record<string, string>>;
 
 type Directives = Record<string, string[]>;
 
@@ -64,9 +64,11 @@ function headersOf(directives: Directives, isHttps: boolean): Headers {
     xPermittedCrossDomainPolicies: false,
     xXssProtection: false,
   };
-  const set: [string, string][] = [];
+  const set: Record<string, string> = {};
   const response = {
-    setHeader: (name: string, value: string) => set.push([name, value]),
+    setHeader: (name: string, value: string) => {
+      set[name] = value;
+    },
     removeHeader: () => undefined,
   };
   helmet(options)({} as IncomingMessage, response as unknown as ServerResponse, error => {

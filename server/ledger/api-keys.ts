@@ -16,6 +16,22 @@ export interface ValidKey extends Spender {
   readonly burst: number;
 }
 
+type StoredKey = Pick<
+  ApiKeyTable,
+  | 'id'
+  | 'account_id'
+  | 'lineage_id'
+  | 'secret_digest'
+  | 'scopes'
+  | 'burst'
+  | 'expires_at'
+  | 'retires_at'
+  | 'revoked_at'
+>;
+
+const FIND = `SELECT id, account_id, lineage_id, secret_digest, scopes, burst, expires_at, retires_at,
+  revoked_at FROM api_key WHERE id = ?`;
+
 // Compared with when the id is unknown, so that both cases do the same work.
 const NO_DIGEST = Buffer.alloc(32);
 
@@ -23,9 +39,7 @@ const NO_DIGEST = Buffer.alloc(32);
 export function authenticate(driver: Driver, token: string, now: Date): ValidKey | null {
   const id = publicIdOf(token);
   if (id === null) return null;
-  const row = statement<[string], ApiKeyTable>(driver, 'SELECT * FROM api_key WHERE id = ?').get(
-    id,
-  );
+  const row = statement<[string], StoredKey>(driver, FIND).get(id);
   const isSame = timingSafeEqual(row?.secret_digest ?? NO_DIGEST, digestOf(token));
   if (!row || !isSame || hasEnded(row, now.toISOString())) return null;
   return {
@@ -39,7 +53,10 @@ export function authenticate(driver: Driver, token: string, now: Date): ValidKey
   };
 }
 
-function hasEnded(row: ApiKeyTable, now: string): boolean {
+function hasEnded(
+  row: Pick<ApiKeyTable, 'expires_at' | 'retires_at' | 'revoked_at'>,
+  now: string,
+): boolean {
   return (
     row.revoked_at !== null ||
     (row.expires_at !== null && row.expires_at <= now) ||

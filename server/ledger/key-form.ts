@@ -1,4 +1,4 @@
-import {createHash, randomInt} from 'node:crypto';
+import {hash, randomInt} from 'node:crypto';
 import {crc32} from 'node:zlib';
 
 /**
@@ -35,7 +35,7 @@ export function publicIdOf(key: string): string | null {
 
 /** SHA-256; enough at rest for a secret of 190 random bits. */
 export function digestOf(key: string): Buffer {
-  return createHash('sha256').update(key).digest();
+  return hash('sha256', key, 'buffer');
 }
 
 function randomText(length: number): string {

@@ -37,7 +37,7 @@ export async function compute(deps: Deps, call: ComputeCall): Promise<Computed> 
   const outcome = isReplay
     ? await recompute(deps, prepared, call)
     : prepared.route === 'inline'
-      ? computeInline(deps, prepared, call, claim)
+      ? await computeInline(deps, prepared, call, claim)
       : await computeHeld(deps, prepared, call, claim);
   const left = entries.left(driver, call.spender, call.at);
   return {bytes: outcome.bytes, pairs: isReplay ? 0 : prepared.pairs, left, isReplay};
@@ -50,15 +50,15 @@ async function recompute({engine}: Deps, prepared: Prepared, call: ComputeCall):
     : engine.run(prepared, {signal: call.signal});
 }
 
-/** Small calls never leave this turn of the event loop, so they reserve and settle in one entry. */
-function computeInline(
-  {engine, database: {driver}}: Deps,
+/** What a small call costs is known to be owed once it is computed: one entry reserves and settles. */
+async function computeInline(
+  {engine, database: {driver}, groupCommit}: Deps,
   prepared: Prepared,
   call: ComputeCall,
   claim: Claim | null,
-): Outcome {
+): Promise<Outcome> {
   const outcome = engine.runInline(prepared);
-  spend(driver, entries.charge, prepared.pairs, call, claim);
+  await groupCommit.run(() => spend(driver, entries.charge, prepared.pairs, call, claim));
   return outcome;
 }
 
@@ -89,6 +89,7 @@ function spend(
   claim: Claim | null,
 ): number {
   if (!claim) return enter(driver, call.spender, call.operation, pairs, call.at);
+  // Inside a group this is a savepoint, so an entry without its claim is undone.
   return driver
     .transaction(() => {
       const entry = enter(driver, call.spender, call.operation, pairs, call.at);

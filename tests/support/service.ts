@@ -15,6 +15,7 @@ import type {Deps} from '../../server/deps.ts';
 import {createEngine} from '../../server/engine/pool.ts';
 import {createHttpServer} from '../../server/http/server.ts';
 import * as apiKeys from '../../server/ledger/api-keys.ts';
+import {GroupCommit} from '../../server/ledger/group-commit.ts';
 import {releaseAbandoned} from '../../server/ledger/entries.ts';
 import type {CreatedKey, NewKey, Operation, Role, Session} from '../../shared/api.ts';
 
@@ -83,7 +84,8 @@ export async function startService(options: ServiceOptions = {}): Promise<TestSe
     limits: config.limits,
     maxQueue: config.limits.queuedCalls,
   });
-  const deps: Deps = {config, database, engine, log: pino({base: null}, sink), now};
+  const groupCommit = new GroupCommit(database.driver);
+  const deps: Deps = {config, database, engine, groupCommit, log: pino({base: null}, sink), now};
   const server = createHttpServer(deps);
   await new Promise<void>(done => server.listen(0, '127.0.0.1', done));
   const baseUrl = `http://127.0.0.1:${(server.address() as AddressInfo).port}`;
