@@ -1,8 +1,8 @@
 import {BarChart, LineChart} from 'echarts/charts';
-import {AriaComponent, GridComponent, TooltipComponent} from 'echarts/components';
+import {GridComponent, MarkLineComponent, TooltipComponent} from 'echarts/components';
 import * as echarts from 'echarts/core';
 import {SVGRenderer} from 'echarts/renderers';
 
-echarts.use([AriaComponent, BarChart, GridComponent, LineChart, SVGRenderer, TooltipComponent]);
+echarts.use([BarChart, GridComponent, LineChart, MarkLineComponent, SVGRenderer, TooltipComponent]);
 
 export {echarts};

@@ -62,7 +62,7 @@ export function pairs(count: number): {written: WrittenNumber; unit: string} {
 /** One line for pairs, grouped with narrow spaces, for labels that are text only. */
 export function pairsText(count: number): string {
   const {written, unit} = pairs(count);
-  return `${groups(written.digits).join(' ')} ${unit}`;
+  return `${groups(written.digits).join('\u202f')} ${unit}`;
 }
 
 /**

@@ -7,13 +7,7 @@ import {
   viewChild,
 } from '@angular/core';
 import {MatIconButton} from '@angular/material/button';
-import type {
-  FieldAnswer,
-  FieldRequest,
-  ForceAnswer,
-  MomentAnswer,
-  Operation,
-} from '../../../shared/api';
+import type {FieldAnswer, FieldRequest, Operation} from '../../../shared/api';
 import {NumberText} from '../format/number-text';
 import {significant} from '../format/numbers';
 import {FieldPicture} from '../field-picture/field-picture';
@@ -65,7 +59,7 @@ export class AnswerView {
   });
   protected readonly bodies = computed(() => {
     const {answer} = this.run();
-    return isField(answer) ? null : (answer);
+    return isField(answer) ? null : answer;
   });
   protected readonly targets = computed(() => this.request().targets);
   protected readonly section = computed(() => {

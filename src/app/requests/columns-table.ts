@@ -105,7 +105,7 @@ export class ColumnsTable {
 
   protected readonly page = linkedSignal({source: this.columns, computation: () => 0});
   protected readonly isLast = computed(() => (this.page() + 1) * PAGE >= this.count());
-  protected readonly whole = computed(() => groups(String(this.count())).join(' '));
+  protected readonly whole = computed(() => groups(String(this.count())).join('\u202f'));
   protected readonly span = computed(() => {
     const first = this.page() * PAGE;
     return `${first}–${Math.min(this.count(), first + PAGE) - 1}`;

@@ -1,9 +1,8 @@
+import {COULOMB_CONSTANT} from '../../../shared/physical-constants';
 import {sectionOf, type Section} from '../field-picture/section';
 
-/** Vacuum electric permittivity, F/m (CODATA 2022). */
-const EPSILON_0 = 8.8541878188e-12;
-/** V·m/C, times 1e-9 C/nC and 1e3 mm/m: potentials in V from nC and mm. */
-const COULOMB = (1 / (4 * Math.PI * EPSILON_0)) * 1e-6;
+/** Potentials in V from charges in nC and distances in mm: 1e-9 C/nC and 1e3 mm/m. */
+const COULOMB = COULOMB_CONSTANT * 1e-6;
 
 const CHARGES_PER_ROD = 81;
 const ROD_CHARGE = 400; // nC
