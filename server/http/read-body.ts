@@ -1,31 +1,74 @@
-import express, {type Request, type Response} from 'express';
+import type {Request, Response} from 'express';
+import type {Transform} from 'node:stream';
+import {createBrotliDecompress, createGunzip, createInflate} from 'node:zlib';
 
 import {ServiceError} from '../errors.ts';
 
 const ENCODINGS = 'gzip, deflate, br';
 
-/** What the reader of bodies throws; only these members are looked at, since others hold the body itself. */
-interface ReaderError {
-  readonly type?: unknown;
-  readonly status?: unknown;
-}
+const decoders: Readonly<Record<string, () => Transform>> = {
+  gzip: createGunzip,
+  'x-gzip': createGunzip,
+  deflate: createInflate,
+  br: createBrotliDecompress,
+};
 
 /** Reads whole bodies of `application/json`, up to `limit` bytes after decompression. */
 export function createBodyReader(limit: number): (req: Request, res: Response) => Promise<Buffer> {
-  const read = express.raw({type: () => true, limit});
   return async (req, res) => {
     if (!hasBody(req)) return Buffer.alloc(0);
     checkMediaType(req);
     if (Number(req.headers['content-length'] ?? 0) > limit) throw tooLarge(limit);
+    const decoder = decoderOf(req);
     // Asked by "Expect: 100-continue", and only now that the caller is known and the length is fit.
-    if (req.headers.expect !== undefined) res.writeContinue();
-    await new Promise<void>((done, fail) => {
-      read(req, res, error =>
-        error ? fail(readerError(error as ReaderError, req, limit)) : done(),
-      );
-    });
-    return req.body as Buffer;
+    if (/^100-continue$/i.test(req.headers.expect ?? '')) res.writeContinue();
+    return collect(req, decoder, limit);
   };
+}
+
+/** Not Express's own reader: it reports a body that is too large only once all of it has come. */
+function collect(req: Request, decoder: Transform | null, limit: number): Promise<Buffer> {
+  return new Promise((done, fail) => {
+    const source = decoder ? req.pipe(decoder) : req;
+    const chunks: Buffer[] = [];
+    let size = 0;
+    const stop = (error: ServiceError): void => {
+      source.off('data', take);
+      if (decoder) {
+        req.unpipe(decoder);
+        decoder.destroy();
+      }
+      fail(error);
+    };
+    const take = (chunk: Buffer): void => {
+      size += chunk.length;
+      if (size > limit) stop(tooLarge(limit));
+      else chunks.push(chunk);
+    };
+    source.on('data', take);
+    source.once('end', () => done(chunks.length === 1 ? chunks[0] : Buffer.concat(chunks, size)));
+    decoder?.once('error', () => {
+      stop(new ServiceError('bad-request', 'The body is not in its Content-Encoding.'));
+    });
+    const endsEarly = (): void => {
+      if (!req.complete) stop(new ServiceError('bad-request', 'The body ended before its time.'));
+    };
+    req.once('error', endsEarly);
+    req.once('close', endsEarly);
+  });
+}
+
+function decoderOf(req: Request): Transform | null {
+  const encoding = (req.headers['content-encoding'] ?? 'identity').toLowerCase().trim();
+  if (encoding === 'identity') return null;
+  if (!Object.hasOwn(decoders, encoding)) {
+    throw new ServiceError(
+      'unsupported-encoding',
+      `The body is encoded as ${shown(encoding)}; expected ${ENCODINGS} or none.`,
+      {facts: {acceptEncoding: ENCODINGS}},
+    );
+  }
+  return decoders[encoding]();
 }
 
 export function hasBody(req: Request): boolean {
@@ -43,7 +86,7 @@ function checkMediaType(req: Request): void {
   if (type.trim() === 'application/json' && isUtf8) return;
   throw new ServiceError(
     'unsupported-media-type',
-    `Given ${given ? given.slice(0, 100).replaceAll(/[^\x20-\x7e]/g, '?') : 'no Content-Type'}; the operation reads application/json in UTF-8.`,
+    `Given ${given ? shown(given) : 'no Content-Type'}; the operation reads application/json in UTF-8.`,
     {facts: {accept: 'application/json'}},
   );
 }
@@ -55,25 +98,9 @@ function tooLarge(limit: number): ServiceError {
   );
 }
 
-function readerError({type, status}: ReaderError, req: Request, limit: number): Error {
-  switch (type) {
-    case 'entity.too.large':
-      return tooLarge(limit);
-    case 'encoding.unsupported':
-      return new ServiceError(
-        'unsupported-encoding',
-        `The body is encoded as ${String(req.headers['content-encoding']).slice(0, 60)}; expected ${ENCODINGS} or none.`,
-        {facts: {acceptEncoding: ENCODINGS}},
-      );
-    case 'request.aborted':
-    case 'request.size.invalid':
-      return new ServiceError('bad-request', 'The body ended before its Content-Length.');
-    default:
-      // What zlib throws on bytes that are not in the encoding that they claim.
-      if (status === 400)
-        return new ServiceError('bad-request', 'The body is not in its Content-Encoding.');
-      return new Error(`the body could not be read (${String(type)})`);
-  }
+/** A header as it may stand in a detail. */
+function shown(text: string): string {
+  return text.slice(0, 100).replaceAll(/[^\x20-\x7e]/g, '?');
 }
 
 /**

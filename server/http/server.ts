@@ -26,6 +26,8 @@ export function createHttpServer(deps: Deps): Server {
   );
   // Node would answer 100 by itself; here the body reader does, once the caller is known.
   server.on('checkContinue', app);
+  // Any other expectation may be passed over (RFC 9110 §10.1.1); Node would refuse it with no body.
+  server.on('checkExpectation', app);
   server.on('clientError', (error: NodeJS.ErrnoException, socket: Duplex) => {
     answerUnreadable(deps, error.code ?? '', socket);
   });
