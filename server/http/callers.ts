@@ -27,11 +27,12 @@ export function createCallerCheck(deps: Deps, operation: ContractOperation): Cal
 function withKey(deps: Deps, req: Request, scopes: readonly Scope[], at: Date): Caller {
   refuseKeyInAddress(req);
   const header = req.headers.authorization;
-  if (header === undefined || !/^Bearer\b/i.test(header)) {
+  // Node drops a second Authorization header; the raw list shows it.
+  const isTwice = header !== undefined && hasTwo(req, 'authorization');
+  if (!isTwice && (header === undefined || !/^Bearer\b/i.test(header))) {
     throw new ServiceError('key-required', 'Send a key as Authorization: Bearer <key>.');
   }
-  // Node joins or drops a second Authorization header; the raw list shows it.
-  if (!BEARER.test(header) || hasTwo(req, 'authorization')) {
+  if (isTwice || !BEARER.test(header)) {
     throw new ServiceError(
       'malformed-authorization',
       'The Authorization header is not "Bearer" and one token.',

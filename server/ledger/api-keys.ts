@@ -41,7 +41,7 @@ export function authenticate(driver: Driver, token: string, now: Date): ValidKey
   if (id === null) return null;
   const row = statement<[string], StoredKey>(driver, FIND).get(id);
   const isSame = timingSafeEqual(row?.secret_digest ?? NO_DIGEST, digestOf(token));
-  if (!row || !isSame || hasEnded(row, now.toISOString())) return null;
+  if (!row || !isSame || hasEnded(row, rfc3339(now))) return null;
   return {
     id: row.id,
     accountId: row.account_id,
@@ -53,6 +53,7 @@ export function authenticate(driver: Driver, token: string, now: Date): ValidKey
   };
 }
 
+/** @param now in the form of the times in the row, or the texts do not compare */
 function hasEnded(
   row: Pick<ApiKeyTable, 'expires_at' | 'retires_at' | 'revoked_at'>,
   now: string,
