@@ -10,6 +10,7 @@ import {ServiceError} from '../errors.ts';
 import {createRoutes} from '../routes/index.ts';
 import {Bursts} from './burst.ts';
 import {keepHeaders, setHeaders} from './common-headers.ts';
+import {hasTwo} from './callers.ts';
 import {factsOf} from './facts.ts';
 import {mountOperations} from './mount.ts';
 import {mountPages} from './pages.ts';
@@ -40,9 +41,15 @@ export function createApp(deps: Deps): Express {
         `An address may be ${config.limits.urlBytes} bytes at most.`,
       );
     }
+    if (!req.url.startsWith('/')) {
+      throw new ServiceError('bad-request', 'The address is no path.');
+    }
     // Node is told not to insist on Host, since it would answer without a body.
     if (req.headers.host === undefined) {
       throw new ServiceError('bad-request', 'The request has no Host header.');
+    }
+    if (hasTwo(req, 'host')) {
+      throw new ServiceError('bad-request', 'The request has more than one Host header.');
     }
     next();
   });

@@ -53,10 +53,11 @@ function withKey(deps: Deps, req: Request, scopes: readonly Scope[], at: Date): 
   return {kind: 'key', key};
 }
 
-function hasTwo(req: Request, name: string): boolean {
+/** Whether a header was sent more than once; Node keeps the first of some and says nothing. */
+export function hasTwo({rawHeaders}: Request, name: string): boolean {
   let count = 0;
-  for (let i = 0; i < req.rawHeaders.length; i += 2) {
-    if (req.rawHeaders[i].toLowerCase() === name) count++;
+  for (let i = 0; i < rawHeaders.length; i += 2) {
+    if (rawHeaders[i].length === name.length && rawHeaders[i].toLowerCase() === name) count++;
   }
   return count > 1;
 }

@@ -1,5 +1,11 @@
 import {randomUUID} from 'node:crypto';
-import {createServer, STATUS_CODES, type Server} from 'node:http';
+import {
+  createServer,
+  STATUS_CODES,
+  type IncomingMessage,
+  type Server,
+  type ServerResponse,
+} from 'node:http';
 import type {Duplex} from 'node:stream';
 
 import type {ProblemCode} from '../../shared/api.ts';
@@ -12,6 +18,12 @@ import {problemOf} from './problem.ts';
 export function createHttpServer(deps: Deps): Server {
   const {limits} = deps.config;
   const app = createApp(deps);
+  const exchanges = new WeakMap<Duplex, Exchange>();
+  const listener = (req: IncomingMessage, res: ServerResponse): void => {
+    exchanges.set(req.socket, {req, res});
+    req.url = originForm(req.url ?? '');
+    app(req, res);
+  };
   const server = createServer(
     {
       maxHeaderSize: limits.headerBytes,
@@ -22,16 +34,38 @@ export function createHttpServer(deps: Deps): Server {
       connectionsCheckingInterval: 1000,
       requireHostHeader: false,
     },
-    app,
+    listener,
   );
   // Node would answer 100 by itself; here the body reader does, once the caller is known.
-  server.on('checkContinue', app);
+  server.on('checkContinue', listener);
   // Any other expectation may be passed over (RFC 9110 §10.1.1); Node would refuse it with no body.
-  server.on('checkExpectation', app);
+  server.on('checkExpectation', listener);
   server.on('clientError', (error: NodeJS.ErrnoException, socket: Duplex) => {
-    answerUnreadable(deps, error.code ?? '', socket);
+    if (isAnswered(exchanges.get(socket))) socket.destroy();
+    else answerUnreadable(deps, error.code ?? '', socket);
   });
+  server.on('connect', (_req, socket) => answerUnreadable(deps, 'CONNECT', socket));
   return server;
+}
+
+/** The last request of a connection and its response. */
+interface Exchange {
+  readonly req: IncomingMessage;
+  readonly res: ServerResponse;
+}
+
+/** Whether an answer to what just turned out unreadable would be a second one, or come too early. */
+function isAnswered(last: Exchange | undefined): boolean {
+  if (!last) return false;
+  return last.req.complete ? !last.res.writableEnded : last.res.headersSent;
+}
+
+/** The path and query of an address; `*` if there are none, which Express would choke on. */
+function originForm(url: string): string {
+  if (url.startsWith('/')) return url;
+  if (!URL.canParse(url)) return '*';
+  const {pathname, search} = new URL(url);
+  return pathname.startsWith('/') ? pathname + search : '*';
 }
 
 const codes: Readonly<Record<string, ProblemCode>> = {
