@@ -21,6 +21,6 @@ export class CompensatedSum {
 
 export function totalOf(terms: readonly number[] | Float64Array): number {
   const sum = new CompensatedSum();
-  for (let i = 0; i < terms.length; i++) sum.add(terms[i]);
+  for (const term of terms) sum.add(term);
   return sum.value;
 }

@@ -1,20 +1,26 @@
 import type {Estimate} from '../../shared/api.ts';
+import {PAIR_WEIGHT} from './limits.ts';
+import type {BoundKind, SumKind} from './methods/direct-sum.ts';
+import {boundKind, sumKind} from './pack.ts';
 import type {Plan} from './plan.ts';
 
-// [pairs/ms] on one thread, from bench/direct-sum.ts; only for telling a caller what to expect.
-const RATE = {potential: 2.4e5, field: 2e5, withErrors: 2.5e4};
+// [evaluations/ms] on one thread, as bench/direct-sum.ts prints them; they tell a caller what to
+// expect and decide nothing.
+const SUM_RATE: Record<SumKind, number> = {potential: 1.2e5, field: 1e5, fieldGradient: 5.4e4};
+const BOUND_RATE: Record<BoundKind, number> = {none: Infinity, errors: 1.4e4, magnitudes: 7e4};
 
-/** [ms] that a call has besides its pairs: reading, packing, writing. */
+/** [ms] that a call has besides its evaluations: reading, packing, writing. */
 const FIXED = 0.05;
 const PER_ROW = 1e-3;
 
 /** What a call costs, how it is computed, and about how long that takes on idle threads. */
 export function estimateOf(plan: Plan, threads: number): Estimate {
-  const {request, work, rows, pairs, route, method} = plan;
-  const hasField = plan.operation === 'forces' || request.quantities?.some(q => q !== 'potential');
-  const withBounds = request.accuracy?.bounds ? 1 / RATE.withErrors : 0;
-  const perPair = 1 / (hasField ? RATE.field : RATE.potential) + withBounds;
+  const {operation, request, work, rows, pairs, route, method} = plan;
+  const sum = operation === 'forces' ? 'field' : sumKind(request);
+  const evaluations = operation === 'moments' ? 0 : work / PAIR_WEIGHT[sum];
+  const bounds = boundKind(request.accuracy?.bounds === true, evaluations);
+  const perEvaluation = 1 / SUM_RATE[sum] + 1 / BOUND_RATE[bounds];
   const lanes = route === 'inline' ? 1 : threads;
-  const milliseconds = FIXED + PER_ROW * rows + (work * perPair) / lanes;
+  const milliseconds = FIXED + PER_ROW * rows + (evaluations * perEvaluation) / lanes;
   return {pairs, route, method, milliseconds: Number(milliseconds.toPrecision(2))};
 }

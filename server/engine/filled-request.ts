@@ -137,7 +137,7 @@ function filledUnits(given: Units | undefined, needed: readonly Dimension[]): Un
     const symbol = given?.[dimension] ?? (isNeeded ? siSymbols[dimension] : undefined);
     if (symbol !== undefined) filled[dimension] = symbol;
   }
-  return filled as Units;
+  return filled;
 }
 
 /** The symbol that a filled request uses for a dimension. */

@@ -17,8 +17,8 @@ export interface PackedCall {
   readonly job: Job;
 }
 
-/** Up to here bounds are made of the rounding errors themselves, above of worst cases. */
-const PAIRS_WITH_ERRORS = 1e8;
+/** Evaluations up to which bounds are made of the rounding errors themselves, above of worst cases. */
+const PAIRS_WITH_ERRORS = 3e7;
 
 /** Evaluations that make a block: some 20 ms, so that calls share the threads and stop soon. */
 const PER_BLOCK: Record<BoundKind, number> = {none: 1.6e6, errors: 2.4e5, magnitudes: 6e5};
@@ -37,9 +37,10 @@ export function pack(plan: Plan): PackedCall {
   }
 }
 
-function boundKind(hasBounds: boolean, pairs: number): BoundKind {
+/** @param evaluations of a charge at a target */
+export function boundKind(hasBounds: boolean, evaluations: number): BoundKind {
   if (!hasBounds) return 'none';
-  return pairs <= PAIRS_WITH_ERRORS ? 'errors' : 'magnitudes';
+  return evaluations <= PAIRS_WITH_ERRORS ? 'errors' : 'magnitudes';
 }
 
 /** How many targets make a block: from the size of the call, never from the number of threads. */
@@ -88,7 +89,7 @@ function packFields(plan: Plan, memory: Memory): PackedCall {
   };
 }
 
-function sumKind({quantities = []}: FilledRequest): SumKind {
+export function sumKind({quantities = []}: FilledRequest): SumKind {
   if (quantities.includes('fieldGradient')) return 'fieldGradient';
   return quantities.includes('field') || quantities.includes('magnitude') ? 'field' : 'potential';
 }

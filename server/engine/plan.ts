@@ -12,6 +12,9 @@ import {
   type EngineLimits,
 } from './limits.ts';
 
+/** Bounds are free, but take this many times as long, and inline calls must not take long. */
+const BOUND_EFFORT = 8;
+
 /** What a request costs and where it is computed: from its shape and options alone. */
 export interface Plan {
   readonly operation: Operation;
@@ -65,8 +68,11 @@ export function plan(
   const shape = shapeOf(operation, filled, sizes, sources, probes);
   checkSize(shape.work, shape.rows, limits);
   const pairs = Math.max(MINIMUM_PAIRS, shape.work);
+  const effort = filled.accuracy?.bounds ? BOUND_EFFORT * shape.work : shape.work;
   const isInline =
-    pairs <= limits.inlinePairs && shape.rows <= limits.inlineRows && bytes <= limits.inlineBytes;
+    Math.max(pairs, effort) <= limits.inlinePairs &&
+    shape.rows <= limits.inlineRows &&
+    bytes <= limits.inlineBytes;
   return {
     operation,
     request: filled,

@@ -5,8 +5,9 @@ import type {PackedCall} from './pack.ts';
 import type {PreparedCall, Task, WrittenAnswer} from './tasks.ts';
 import type {Threads} from './threads.ts';
 
-/** Work up to here is one task: a hop between threads costs more than what sharing it would save. */
-const WHOLE_WORK = 2e6;
+/** Work up to here is one task: hops between threads cost more than what sharing it would save. */
+const WHOLE_WORK = 1.6e6;
+const WHOLE_WORK_WITH_BOUNDS = 2.4e5;
 
 /** A call on its way through the threads. */
 interface Call {
@@ -45,7 +46,7 @@ export class Scheduler {
    *
    * @throws ServiceError overloaded, or what the task refuses
    */
-  async single<T extends Task & {type: 'prepare'}>(task: T): Promise<PreparedCall> {
+  async single(task: Task & {type: 'prepare'}): Promise<PreparedCall> {
     return this.#admit((resolve, reject) => {
       let isOut = false;
       return {
@@ -95,7 +96,8 @@ export class Scheduler {
         const finish = ({bytes, timing}: WrittenAnswer): void => {
           if (bytes) resolve({bytes, timing});
         };
-        return plan.work <= WHOLE_WORK
+        const hasBounds = plan.request.accuracy?.bounds === true;
+        return plan.work <= (hasBounds ? WHOLE_WORK_WITH_BOUNDS : WHOLE_WORK)
           ? this.#wholeCall({plan, call}, flag, queuedAt, onStart, finish, end)
           : this.#blockCall({plan, call}, flag, queuedAt, onStart, finish, end);
       });

@@ -1,7 +1,8 @@
 import {expect, test} from 'vitest';
 
-import type {ForceRequest} from '../../shared/api.ts';
+import type {ForceRequest, Placement} from '../../shared/api.ts';
 import type {Job} from '../../server/engine/jobs.ts';
+import {rotationAbout} from '../../server/engine/rotation.ts';
 import {compute, numbers} from './compute.ts';
 import {fixed, root, size, times, toNumber} from './fixed-point.ts';
 import {exactCharges, exactField, exactForce, toSI, type Vector} from './oracle.ts';
@@ -136,6 +137,26 @@ test('bounds hold where a target is hardly further from a charge than rounding',
     }
   }
   expect(compared).toBeGreaterThan(300);
+});
+
+test('bounds hold for bodies placed by a matrix, which is taken as it is echoed', () => {
+  const potential = new Comparison('V');
+  const field = new Comparison('E');
+  for (let seed = 1; seed < 300; seed += 3) {
+    const {request, count} = randomSet(seed, {atMost: 30});
+    const [{charges, placement}] = request.bodies;
+    const {rotate, translate = [0, 0, 0]} = placement ?? {};
+    const {matrix} = rotationAbout(rotate?.axis ?? [], rotate?.degrees ?? NaN);
+    const [a, b, c, d, e, f, g, h, i] = matrix.map(Math.fround);
+    const [tx, ty, tz] = translate;
+    const given: Placement = {matrix: [a, b, c, tx, d, e, f, ty, g, h, i, tz, 0, 0, 0, 1]};
+    const [{matrix: used} = given] =
+      compute('fields', {...request, bodies: [{charges, placement: given}]}).answer.placements ??
+      [];
+    // The echoed matrix is orthonormal to rounding, so it is used as it is.
+    const echoed = {...request, bodies: [{charges, placement: {matrix: used}}]};
+    compareSet({request: echoed, count}, `${seed}`, potential, field);
+  }
 });
 
 test('no gradient is off by more than its bound', () => {

@@ -82,7 +82,15 @@ export function exactCharges(request: FilledRequest): Charge[][] {
 
 /** Rodrigues' rotation of a vector: v cos θ + (k × v) sin θ + k (k · v) (1 − cos θ). */
 function placer(placement: Placement | undefined, length: string): (v: Vector) => Vector {
-  if (placement?.matrix) throw new RangeError('the oracle takes no matrix');
+  const matrix = placement?.matrix;
+  if (matrix) {
+    return v => {
+      const row = (n: number): bigint =>
+        [0, 1, 2].reduce((sum, k) => sum + times(fixed(matrix[4 * n + k]), v[k]), 0n) +
+        toSI(matrix[4 * n + 3], length);
+      return [row(0), row(1), row(2)];
+    };
+  }
   const shift = (placement?.translate ?? [0, 0, 0]).map(value => toSI(value, length));
   const moved = (v: readonly bigint[]): Vector => [
     v[0] + shift[0],

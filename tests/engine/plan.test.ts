@@ -95,6 +95,10 @@ test('small calls go inline: up to 5e4 pairs, 500 rows and 64 KiB', () => {
   expect(plan('fields', fields(101, 500), 64 * 1024).route).toBe('worker');
   expect(plan('fields', fields(1, 501), 64 * 1024).route).toBe('worker');
   expect(plan('fields', fields(1, 1), 64 * 1024 + 1).route).toBe('worker');
+  // Bounds are free, but take eight times as long.
+  const bounded = {accuracy: {bounds: true}};
+  expect(plan('fields', fields(25, 250, bounded)).route).toBe('inline');
+  expect(plan('fields', fields(26, 250, bounded)).route).toBe('worker');
 });
 
 test('a call larger than a synchronous one may be is refused, one just as large is not', () => {

@@ -14,6 +14,10 @@ function startEngine(options: EngineOptions): Engine {
   return engine;
 }
 
+// Threads take a second to start from sources, so most tests share these.
+const oneThread = startEngine({threads: 1});
+const twoThreads = startEngine({threads: 2});
+
 const bytesOf = (value: unknown): Uint8Array => Buffer.from(JSON.stringify(value), 'utf8');
 const textOf = (bytes: Uint8Array): string => Buffer.from(bytes).toString('utf8');
 const unwatched = (): AbortSignal => new AbortController().signal;
@@ -76,8 +80,7 @@ const assembly = {
 
 test('one, two and three threads give the same bits', async () => {
   const answers: string[][] = [];
-  for (const threads of [1, 2, 3]) {
-    const engine = startEngine({threads});
+  for (const engine of [oneThread, twoThreads, startEngine({threads: 3})]) {
     answers.push([
       withoutCost(await answerOf(engine, 'fields', everything)),
       withoutCost(await answerOf(engine, 'forces', assembly)),
@@ -90,11 +93,11 @@ test('one, two and three threads give the same bits', async () => {
 
 test('a call computed inline and in a thread gives the same bits, however the threads get it', async () => {
   const request = {
-    bodies: [{charges: charges(90)}],
+    bodies: [{charges: charges(15)}],
     targets: grid(20, 20),
     accuracy: {bounds: true},
   };
-  const engine = startEngine({threads: 2});
+  const engine = twoThreads;
   const prepared = await engine.prepare('fields', bytesOf(request));
   expect(prepared.route).toBe('inline');
   const inline = withoutCost(textOf(engine.runInline(prepared).bytes));
@@ -105,7 +108,7 @@ test('a call computed inline and in a thread gives the same bits, however the th
 });
 
 test('bounds are free of charge in bits too: asking for them changes no value', async () => {
-  const engine = startEngine({threads: 2});
+  const engine = twoThreads;
   const request = {bodies: [{charges: charges(500)}], targets: grid(30, 30)};
   const plain = JSON.parse(await answerOf(engine, 'fields', request)) as FieldAnswer;
   const withBounds = {...request, accuracy: {bounds: true}};
@@ -116,7 +119,7 @@ test('bounds are free of charge in bits too: asking for them changes no value', 
 });
 
 test('large bodies are read by a thread, and refused with the same words and pointers', async () => {
-  const engine = startEngine({threads: 1});
+  const engine = oneThread;
   const bodies = [{charges: charges(3000)}];
   const targets = {points: {x: [2, 3], y: [2], z: [2, 3]}};
   const large = bytesOf({bodies, targets});
@@ -133,7 +136,7 @@ test('large bodies are read by a thread, and refused with the same words and poi
 });
 
 test('a call stops within 250 ms once its client has gone, and the threads are free again', async () => {
-  const engine = startEngine({threads: 2});
+  const engine = twoThreads;
   const request = {bodies: [{charges: charges(20_000)}], targets: grid(120, 120)};
   const prepared = await engine.prepare('fields', bytesOf(request));
   const controller = new AbortController();
@@ -150,7 +153,7 @@ test('a call stops within 250 ms once its client has gone, and the threads are f
 });
 
 test('a call whose client has gone before it starts is not computed', async () => {
-  const engine = startEngine({threads: 1});
+  const engine = oneThread;
   const prepared = await engine.prepare('fields', bytesOf(everything));
   const signal = AbortSignal.abort(new Error('gone already'));
   await expect(engine.run(prepared, {signal})).rejects.toThrow('gone already');
@@ -158,7 +161,7 @@ test('a call whose client has gone before it starts is not computed', async () =
 });
 
 test('a small call does not wait for a large one to end', async () => {
-  const engine = startEngine({threads: 1});
+  const engine = oneThread;
   const large = {bodies: [{charges: charges(20_000)}], targets: grid(100, 100)};
   const prepared = await engine.prepare('fields', bytesOf(large));
   let isDone = false;
@@ -197,7 +200,7 @@ test('more calls than the queue holds are refused as overloaded', async () => {
 });
 
 test('a coincident target is refused by a thread as it is inline', async () => {
-  const engine = startEngine({threads: 1});
+  const engine = oneThread;
   const request = {
     bodies: [{charges: {x: [0], y: [0], z: [0], charge: [1]}}],
     targets: {points: {x: [1, 0], y: [0, 0], z: [0, 0]}},
@@ -211,7 +214,7 @@ test('a coincident target is refused by a thread as it is inline', async () => {
 });
 
 test('an estimate is what the call costs, and faults of its request are pointed at inside it', async () => {
-  const engine = startEngine({threads: 2});
+  const engine = twoThreads;
   for (const [operation, request] of [
     ['fields', everything],
     ['forces', assembly],
