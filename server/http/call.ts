@@ -43,8 +43,8 @@ export interface Call<Id extends OperationId> {
   readonly bytes: Uint8Array;
   readonly idempotencyKey: string | null;
   readonly address: string;
-  /** Aborted when the caller has gone. */
-  readonly signal: AbortSignal;
+  /** A signal that is aborted when the caller has gone; made when it is asked for. */
+  readonly signal: () => AbortSignal;
   /** The instant at which the request arrived. */
   readonly at: Date;
 }

@@ -13,7 +13,8 @@ export interface ComputeCall {
   readonly operation: Operation;
   readonly bytes: Uint8Array;
   readonly idempotencyKey: string | null;
-  readonly signal: AbortSignal;
+  /** Aborted when nobody waits for the answer any more; asked for only by calls that take a while. */
+  readonly signal: () => AbortSignal;
   readonly at: Date;
 }
 
@@ -47,7 +48,7 @@ export async function compute(deps: Deps, call: ComputeCall): Promise<Computed> 
 async function recompute({engine}: Deps, prepared: Prepared, call: ComputeCall): Promise<Outcome> {
   return prepared.route === 'inline'
     ? engine.runInline(prepared)
-    : engine.run(prepared, {signal: call.signal});
+    : engine.run(prepared, {signal: call.signal()});
 }
 
 /** What a small call costs is known to be owed once it is computed: one entry reserves and settles. */
@@ -71,7 +72,7 @@ async function computeHeld(
   const entry = spend(driver, entries.reserve, prepared.pairs, call, claim);
   let outcome: Outcome;
   try {
-    outcome = await engine.run(prepared, {signal: call.signal});
+    outcome = await engine.run(prepared, {signal: call.signal()});
   } catch (error) {
     // Any failure: a time-out, a refusal of the engine, a caller who left.
     entries.release(driver, entry, now());
