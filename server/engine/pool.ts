@@ -48,6 +48,8 @@ export interface Engine {
   runInline(prepared: Prepared): Outcome;
   /** What a call would cost; the body is that of `/v1/estimates`. @throws ServiceError */
   estimate(body: Uint8Array): Estimate | Promise<Estimate>;
+  /** Makes every thread ready to read bodies, so that no first caller waits for it. */
+  warmUp(): Promise<void>;
   /** Calls in the threads or waiting for them, and how many there may be. */
   load(): {readonly queued: number; readonly capacity: number};
   close(): Promise<void>;
@@ -93,6 +95,10 @@ export function createEngine({
         return estimateOf(planBody('estimates', body, limits), count);
       }
       return read('estimates', body).then(({plan}) => estimateOf(plan, count));
+    },
+    async warmUp() {
+      // As many tasks at once as there are threads: each thread gets one.
+      await Promise.all(Array.from({length: count}, () => threads.do({type: 'warm'})));
     },
     load: () => scheduler.load,
     close: () => threads.close(),

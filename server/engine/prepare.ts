@@ -1,6 +1,6 @@
 import type {EstimateRequest, Operation} from '../../shared/api.ts';
 import {readJson} from '../contract/read-json.ts';
-import {operationIds, validateRequest} from '../contract/validate.ts';
+import {compileContract, operationIds, validateRequest} from '../contract/validate.ts';
 import type {ComputeRequest} from './filled-request.ts';
 import type {EngineLimits} from './limits.ts';
 import {plan, type Plan} from './plan.ts';
@@ -24,4 +24,9 @@ export function planBody(
   validateRequest(operationIds[operation], value);
   // The contract has just checked that it is one.
   return plan(operation, value as ComputeRequest, bytes.length, limits);
+}
+
+/** Compiles the checks of all bodies, which takes the better part of a second in a new thread. */
+export function compileChecks(): void {
+  compileContract([...Object.values(operationIds), 'createEstimates']);
 }

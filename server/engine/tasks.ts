@@ -14,6 +14,7 @@ export type Task =
       readonly bytes: Uint8Array;
       readonly limits: EngineLimits;
     }
+  | {readonly type: 'warm'}
   | {readonly type: 'pack'; readonly plan: Plan}
   | {
       readonly type: 'block';
@@ -54,6 +55,7 @@ export interface WrittenAnswer {
 /** What each type of task results in. */
 export interface TaskResults {
   readonly prepare: PreparedCall;
+  readonly warm: undefined;
   readonly pack: PackedCall;
   readonly block: BlockReport;
   readonly answer: WrittenAnswer;

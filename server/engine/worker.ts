@@ -11,7 +11,7 @@ import type {Task, TaskResponse, TaskResults, WrittenAnswer} from './tasks.ts';
 export default async function work(task: Task): Promise<TaskResponse> {
   try {
     const result = await resultOf(task);
-    return 'bytes' in result ? withMovedBytes(result) : {result};
+    return result && 'bytes' in result ? withMovedBytes(result) : {result};
   } catch (error) {
     // A refusal of the request; bugs go up.
     if (!(error instanceof ServiceError)) throw error;
@@ -28,6 +28,11 @@ async function resultOf(task: Task): Promise<TaskResults[Task['type']]> {
       const plan = planBody(task.operation, task.bytes, task.limits);
       if (task.operation === 'estimates') return {plan: withoutRequest(plan)};
       return {plan: withoutRequest(plan), call: pack(plan)};
+    }
+    case 'warm': {
+      const {compileChecks} = await import('./prepare.ts');
+      compileChecks();
+      return undefined;
     }
     case 'pack':
       return pack(task.plan);

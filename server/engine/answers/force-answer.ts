@@ -3,6 +3,7 @@ import {ServiceError, type Issue} from '../../errors.ts';
 import {CompensatedSum} from '../compensated-sum.ts';
 import {UNIT_ROUNDOFF} from '../exact.ts';
 import {vectorLength} from '../field-block.ts';
+import {ISSUES_LISTED} from '../limits.ts';
 import {FORCE_STRIDE, type BlockReport, type ForceJob} from '../jobs.ts';
 import {outputScale, scaled, scaledBound, type OutputScale} from '../output-scale.ts';
 import {numbersIn, resultDigest} from './digests.ts';
@@ -181,26 +182,31 @@ function refuseOverlaps(
   job: ForceJob,
   reports: readonly BlockReport[],
 ): void {
-  const pairs = reports.flatMap(({coincident}) => {
-    const found: [number, number][] = [];
-    for (let n = 0; n < coincident.length; n += 2) found.push([coincident[n], coincident[n + 1]]);
-    return found;
-  });
-  if (pairs.length === 0) return;
   const {count} = job.charges;
-  // Two charges of the assembly find each other twice.
-  const once = pairs.filter(
-    ([i, j]) => i >= count || i < j || !pairs.some(([a, b]) => a === j && b === i),
-  );
-  const issues = once.flatMap(([i, j]): Issue[] => {
-    const [one, other] = [nameOf(header, job, i), nameOf(header, job, j)];
-    const detail = `${one.name} and ${other.name} are at one place, so the force between them is not defined`;
-    return [one, other].map(({pointer}) => ({pointer, code: 'overlapping-charges', detail}));
+  const found = new Set<string>();
+  const issues: Issue[] = [];
+  let errorCount = 0;
+  reports.forEach(({coincident, coincidentCount}, block) => {
+    // Two charges of the assembly find each other, and each of the two is at fault once.
+    errorCount += job.blocks[block] < count ? coincidentCount : 2 * coincidentCount;
+    for (let n = 0; n < coincident.length; n += 2) {
+      const [i, j] = [coincident[n], coincident[n + 1]];
+      if (found.has(`${j} ${i}`)) continue;
+      found.add(`${i} ${j}`);
+      if (issues.length < ISSUES_LISTED) issues.push(...issuesOf(header, job, i, j));
+    }
   });
+  if (issues.length === 0) return;
   throw new ServiceError('overlapping-charges', `${issues[0].detail}; move one of them`, {
-    errors: issues.slice(0, 20),
-    errorCount: issues.length,
+    errors: issues,
+    errorCount,
   });
+}
+
+function issuesOf(header: AnswerHeader, job: ForceJob, i: number, j: number): Issue[] {
+  const [one, other] = [nameOf(header, job, i), nameOf(header, job, j)];
+  const detail = `${one.name} and ${other.name} are at one place, so the force between them is not defined`;
+  return [one, other].map(({pointer}) => ({pointer, code: 'overlapping-charges', detail}));
 }
 
 function nameOf(
