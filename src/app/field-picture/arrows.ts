@@ -34,7 +34,7 @@ export function arrows(section: Section, layout: Layout, taken: readonly Circle[
       const [eu, ev] = [fieldU[index], fieldV[index]];
       const size = Math.hypot(eu, ev);
       if (!(size > 0)) continue;
-      if (taken.some(other => Math.hypot(other.x - x, other.y - y) < other.radius + 11)) continue;
+      if (taken.some(other => Math.hypot(other.x - x, other.y - y) < other.radius + 14)) continue;
       found.push({x, y, eu, ev, size, index});
     }
   }

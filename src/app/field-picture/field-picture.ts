@@ -55,7 +55,7 @@ export class FieldPicture {
   /** How much of the ramp is used; less keeps a decoration pale. */
   readonly reach = input(1);
   /** About how many bands a map of the potential gets. */
-  readonly bands = input(15);
+  readonly bands = input(13);
   readonly tallest = input(480);
 
   protected readonly point = signal<GridPoint | null>(null);

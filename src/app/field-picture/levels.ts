@@ -1,5 +1,5 @@
 import {at, ramps, type Rgb} from './ramps';
-import {decimalsOf, multiples, niceStep} from './ticks';
+import {decimalsOf, multiples, nearestStep, niceStep} from './ticks';
 
 export type Quantity = 'potential' | 'strength';
 
@@ -17,7 +17,7 @@ export interface Scale {
 
 /** Parts of the values left out at either end, so that a peak on a charge does not flatten the rest. */
 const CUT = 0.02;
-const BANDS = 15;
+const BANDS = 13;
 
 function quantiles(values: Float64Array, shares: readonly number[]): number[] {
   const stride = Math.max(1, Math.floor(values.length / 20_000));
@@ -87,7 +87,7 @@ export function potentialScale(values: Float64Array, bands = BANDS): Scale {
   if (high - low <= 1e-12 * Math.max(Math.abs(low), Math.abs(high))) {
     return scaleOf([], all, value => 0.5 + 0.4 * Math.sign(value), 0, 'diverging');
   }
-  const step = niceStep((high - low) / bands);
+  const step = nearestStep(high - low, bands);
   const levels = multiples(low - step * 0.499, high + step * 0.499, step);
   const most = Math.max(Math.abs(levels[0]), Math.abs(levels[levels.length - 1])) + step / 2;
   const hasBothSigns = low < step && high > -step;

@@ -47,7 +47,7 @@ function paintCloud(
       ctx.beginPath();
       for (const {u, v, charge} of charges) {
         if (Math.sign(charge) !== sign) continue;
-        const half = 1.5 + 2.5 * Math.sqrt(Math.abs(charge) / most);
+        const half = 2 + 2.5 * Math.sqrt(Math.abs(charge) / most);
         const [x, y] = [xOf(layout, u), yOf(layout, v)];
         ctx.moveTo(x - half, y);
         ctx.lineTo(x + half, y);
@@ -56,7 +56,7 @@ function paintCloud(
           ctx.lineTo(x, y + half);
         }
       }
-      ctx.lineWidth = isCasing ? 3.2 : 1.4;
+      ctx.lineWidth = isCasing ? 3.4 : 2;
       ctx.strokeStyle = isCasing ? css(inks.paper) : sign > 0 ? inks.positive : inks.negative;
       ctx.stroke();
     }

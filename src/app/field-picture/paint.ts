@@ -73,8 +73,6 @@ export function paint(ctx: CanvasRenderingContext2D, picture: Picture): void {
     return band;
   };
 
-  ctx.fillStyle = css(inks.paper);
-  ctx.fillRect(0, 0, layout.width, layout.height);
   ctx.save();
   const clip = outline(section, map);
   ctx.clip(clip);

@@ -7,6 +7,18 @@ export function niceStep(rough: number): number {
   return nice * power;
 }
 
+/** The 1-2-5 step that cuts `span` into the number of parts that is, in proportion, nearest to `wanted`. */
+export function nearestStep(span: number, wanted: number): number {
+  const above = niceStep(span / wanted);
+  const below = above / (leadOf(above) === 5 ? 2.5 : 2);
+  const distance = (step: number): number => Math.abs(Math.log(span / step / wanted));
+  return distance(below) < distance(above) ? below : above;
+}
+
+/** 1, 2 or 5. */
+const leadOf = (step: number): number =>
+  Math.round(step / 10 ** Math.floor(Math.log10(step) + 1e-9));
+
 /** How many decimals write every multiple of `step` exactly. */
 export function decimalsOf(step: number): number {
   return Math.max(0, -Math.floor(Math.log10(step) + 1e-9));
@@ -32,10 +44,9 @@ export interface Ticks {
 /** Major ticks in 1-2-5 steps, about `wanted` of them, with four or five minor parts each. */
 export function ticks(low: number, high: number, wanted: number): Ticks {
   const step = niceStep((high - low) / Math.max(1, wanted));
-  const lead = Math.round(step / 10 ** Math.floor(Math.log10(step) + 1e-9));
   return {
     major: multiples(low, high, step),
-    minor: multiples(low, high, step / (lead === 2 ? 4 : 5)),
+    minor: multiples(low, high, step / (leadOf(step) === 2 ? 4 : 5)),
     decimals: decimalsOf(step),
   };
 }

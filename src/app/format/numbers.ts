@@ -50,13 +50,17 @@ export function groups(digits: string): string[] {
   return [...left, ...right.slice(1)];
 }
 
-/** Pairs are exact up to nine digits; above, giga or tera with the decimals that keep four digits. */
+/**
+ * Pairs are exact up to nine digits; above, giga or tera with the decimals that keep four digits, cut and
+ * not rounded, so that no more is shown than there is.
+ */
 export function pairs(count: number): {written: WrittenNumber; unit: string} {
   if (Math.abs(count) < 1e9) return {written: fixed(count, 0), unit: 'pairs'};
   const [scale, unit] = Math.abs(count) < 1e12 ? [1e9, 'Gpairs'] : [1e12, 'Tpairs'];
   const scaled = count / scale;
   const decimals = Number.isInteger(scaled) ? 0 : Math.abs(scaled) < 10 ? 3 : 1;
-  return {written: fixed(scaled, decimals), unit};
+  const part = 10 ** decimals;
+  return {written: fixed(Math.trunc(scaled * part) / part, decimals), unit};
 }
 
 /** One line for pairs, grouped with narrow spaces, for labels that are text only. */

@@ -44,6 +44,23 @@ const faultyLines = StateField.define<DecorationSet>({
   provide: field => EditorView.decorations.from(field),
 });
 
+/**
+ * Typing over a selection: left to itself, the browser would carry the old style over as a style
+ * attribute, which the page's policy forbids.
+ */
+const typeOver = EditorView.domEventHandlers({
+  beforeinput(event, view) {
+    const isPlain = event.inputType === 'insertText' && event.data !== null && !event.isComposing;
+    if (!isPlain || view.state.selection.main.empty) return false;
+    event.preventDefault();
+    view.dispatch(view.state.replaceSelection(event.data), {
+      userEvent: 'input.type',
+      scrollIntoView: true,
+    });
+    return true;
+  },
+});
+
 const colours = HighlightStyle.define([
   {tag: tags.propertyName, color: 'var(--mat-sys-on-surface)'},
   {tag: tags.string, color: 'var(--mat-sys-primary)'},
@@ -148,6 +165,7 @@ export class RequestEditor {
           json(),
           syntaxHighlighting(colours),
           faultyLines,
+          typeOver,
           theme,
           EditorView.lineWrapping,
           this.nonce === null ? [] : EditorView.cspNonce.of(this.nonce),

@@ -67,7 +67,7 @@ export interface Finding {
     }
 
     code {
-      overflow-wrap: anywhere;
+      white-space: nowrap;
     }
 
     td {
@@ -88,6 +88,13 @@ export interface Finding {
 
     .more {
       margin-block-start: 6px;
+    }
+
+    @media (width < 600px) {
+      code {
+        overflow-wrap: anywhere;
+        white-space: normal;
+      }
     }
   `,
   changeDetection: ChangeDetectionStrategy.OnPush,

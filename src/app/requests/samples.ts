@@ -121,7 +121,7 @@ export const samples: readonly Sample[] = [
     operation: 'fields',
     name: 'Cloud of 12 000 droplets',
     about: `Charged spray under the bell, seed ${SEED}`,
-    text: () => compactJson(cloud(), 100),
+    text: () => compactJson(cloud()),
   },
   {
     operation: 'fields',
