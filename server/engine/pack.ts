@@ -18,7 +18,7 @@ export interface PackedCall {
 }
 
 /** Evaluations up to which bounds are made of the rounding errors themselves, above of worst cases. */
-const PAIRS_WITH_ERRORS = 3e7;
+const PAIRS_WITH_ERRORS = 5e7;
 
 /** Evaluations that make a block: some 20 ms, so that calls share the threads and stop soon. */
 const PER_BLOCK: Record<BoundKind, number> = {none: 1.6e6, errors: 2.4e5, magnitudes: 6e5};
