@@ -92,13 +92,18 @@ export function readConfig(env: NodeJS.ProcessEnv, limits: Partial<Limits> = {})
     trustProxy: whole(env, 'TRUST_PROXY', 0, 0, 16),
     smtpUrl: env['SMTP_URL'] || null,
     isDemo: env['DEMO'] ? env['DEMO'] !== '0' : isLoopback(host),
-    isSecureOrigin: new URL(publicUrl).protocol === 'https:' || isLoopback(host),
+    isSecureOrigin: isSecure(new URL(publicUrl)),
     limits: {...defaultLimits, ...limits},
   };
 }
 
 export function isLoopback(host: string): boolean {
   return host === 'localhost' || host === '::1' || /^127(\.\d{1,3}){3}$/.test(host);
+}
+
+/** What counts is the address that the browser sees, not the one that is listened on. */
+function isSecure({protocol, hostname}: URL): boolean {
+  return protocol === 'https:' || isLoopback(hostname.replace(/^\[(.*)\]$/, '$1'));
 }
 
 function bracketed(host: string): string {

@@ -18,9 +18,15 @@ export type CallerCheck = (req: Request, at: Date) => Caller;
 
 export function createCallerCheck(deps: Deps, operation: ContractOperation): CallerCheck {
   const {callers, scopes, roles} = operation;
-  if (callers === 'anybody') return () => ({kind: 'nobody'});
-  if (callers === 'apiKey') return (req, at) => withKey(deps, req, scopes, at);
   const isReading = operation.method === 'get';
+  if (callers === 'anybody') {
+    return req => {
+      // Or another site could sign somebody in as somebody else.
+      if (!isReading) refuseOtherSites(deps, req);
+      return {kind: 'nobody'};
+    };
+  }
+  if (callers === 'apiKey') return (req, at) => withKey(deps, req, scopes, at);
   return (req, at) => withSession(deps, req, roles, isReading, at);
 }
 
@@ -115,7 +121,7 @@ function withSession(
 }
 
 /** @throws ServiceError cross-site-request if the browser says that another site sent the request */
-export function refuseOtherSites({config}: Deps, req: Request): void {
+function refuseOtherSites({config}: Deps, req: Request): void {
   const site = req.headers['sec-fetch-site'];
   const origin = req.headers.origin;
   const isOther =

@@ -1,4 +1,4 @@
-import {RateLimiterMemory} from 'rate-limiter-flexible';
+import {RateLimiterMemory, RateLimiterRes} from 'rate-limiter-flexible';
 
 import type {Session, SignIn} from '../../shared/api.ts';
 import {passwordFits} from '../accounts/passwords.ts';
@@ -25,18 +25,18 @@ export function createSignIn(deps: Deps): SignInWith {
   return async ({email, password}, address, at) => {
     refuseInsecure(deps);
     const name = `${email.toLowerCase()} ${address}`;
-    await refuseUsedUp(ofPerson, name);
-    await refuseUsedUp(ofAddress, address);
+    // Counted before the password is looked at, or tries sent at once would all pass the count.
+    await countTry(ofPerson, name);
+    await countTry(ofAddress, address);
     const found = await people.findByEmail(database, email);
     if (!(await passwordFits(found?.password_hash ?? null, password)) || !found) {
-      // A refused count is a count all the same; the next try is what is refused.
-      await Promise.allSettled([ofPerson.consume(name), ofAddress.consume(address)]);
       throw new ServiceError(
         'sign-in-failed',
         'The e-mail address and the password do not belong together.',
       );
     }
     await ofPerson.delete(name);
+    await ofAddress.reward(address);
     return startSession(deps, found.id, at);
   };
 }
@@ -56,15 +56,18 @@ export function refuseInsecure({config}: Deps): void {
   );
 }
 
-async function refuseUsedUp(limiter: RateLimiterMemory, name: string): Promise<void> {
-  const state = await limiter.get(name);
-  if (!state || state.consumedPoints < limiter.points) return;
-  const seconds = Math.ceil(state.msBeforeNext / 1000);
-  throw new ServiceError(
-    'rate-limited',
-    `Too many failed sign-ins; the next try is possible in ${seconds} s.`,
-    {
-      retryAfter: seconds,
-    },
-  );
+/** @throws ServiceError rate-limited */
+async function countTry(limiter: RateLimiterMemory, name: string): Promise<void> {
+  try {
+    await limiter.consume(name);
+  } catch (state) {
+    // The limiter rejects with its state when the tries are used up, and with an Error for a bug.
+    if (!(state instanceof RateLimiterRes)) throw state;
+    const seconds = Math.ceil(state.msBeforeNext / 1000);
+    throw new ServiceError(
+      'rate-limited',
+      `Too many failed sign-ins; the next try is possible in ${seconds} s.`,
+      {retryAfter: seconds},
+    );
+  }
 }
