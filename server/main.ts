@@ -31,6 +31,8 @@ process.on('uncaughtException', error => {
   process.exit(1);
 });
 
+// The database and what stands beside it are for the owner of the process alone.
+process.umask(0o077);
 mkdirSync(config.dataDir, {recursive: true, mode: 0o700});
 const database = openDatabase(join(config.dataDir, 'fieldstead.sqlite'));
 await migrate(database);

@@ -5,6 +5,7 @@ import express, {
   type Response,
 } from 'express';
 
+import {problemCatalogue} from '../../shared/problem-catalogue.ts';
 import type {Deps} from '../deps.ts';
 import {ServiceError} from '../errors.ts';
 import {createRoutes} from '../routes/index.ts';
@@ -87,6 +88,7 @@ function logWhenDone({log}: Deps, req: Request, res: Response): void {
 function problemWriter({config, log}: Deps): ErrorRequestHandler {
   // Express knows an error handler by its four parameters.
   return (thrown: unknown, req, res, _next) => {
+    if (res.destroyed) return; // The caller has gone, and nobody is left to be told.
     const facts = factsOf(res);
     const error = toServiceError(thrown);
     facts.problem = error.code;
@@ -101,6 +103,11 @@ function problemWriter({config, log}: Deps): ErrorRequestHandler {
     // Who asked for a 100 may now leave the body out. Anybody else sends on, and must not meet a
     // closed socket before the answer was seen.
     if (!req.complete && req.headers.expect !== undefined) res.setHeader('Connection', 'close');
+    if (problemCatalogue[error.code].status === 429) {
+      for (const [name, value] of Object.entries(facts.headersOf429?.() ?? {})) {
+        res.setHeader(name, value);
+      }
+    }
     discardRest(req, config.limits.discardBytes, config.limits.discardMilliseconds);
     writeProblem(res, error, config.publicUrl, facts.requestId);
   };
