@@ -11,6 +11,8 @@ export interface BurstState {
   readonly left: number;
   /** Until the window ends [s]. */
   readonly resets: number;
+  /** Of a call beyond the burst: when to come back [s]. */
+  readonly retryAfter?: number;
 }
 
 /**
@@ -27,7 +29,7 @@ export class Bursts {
     this.#strangers = new RateLimiterMemory({points: strangerCalls, duration: STRANGER_WINDOW});
   }
 
-  /** @throws ServiceError rate-limited */
+  /** Counts a call of a key, whether it is one too many or not. */
   async count(keyId: string, burst: number): Promise<BurstState> {
     let limiter = this.#limiters.get(burst);
     if (!limiter) {
@@ -38,30 +40,37 @@ export class Bursts {
       });
       this.#limiters.set(burst, limiter);
     }
-    const text = `The key allows ${burst} calls in ${BURST_WINDOW} s.`;
-    const state = await consume(limiter, keyId, text);
-    return {left: state.remainingPoints, resets: Math.ceil(state.msBeforeNext / 1000)};
+    return consume(limiter, keyId);
   }
 
   /** Counts a call without a valid key. @throws ServiceError rate-limited */
   async countStranger(address: string): Promise<void> {
-    const text = `Without a valid key, an address may make ${this.#strangers.points} calls in ${STRANGER_WINDOW} s.`;
-    await consume(this.#strangers, address, text);
+    const {retryAfter} = await consume(this.#strangers, address);
+    if (retryAfter === undefined) return;
+    throw new ServiceError(
+      'rate-limited',
+      `Without a valid key, an address may make ${this.#strangers.points} calls in ${STRANGER_WINDOW} s.`,
+      {retryAfter},
+    );
   }
 }
 
-async function consume(
-  limiter: RateLimiterMemory,
-  name: string,
-  text: string,
-): Promise<RateLimiterRes> {
+/** @throws ServiceError rate-limited if a call was beyond the burst of its key */
+export function refuseBeyond(burst: number, {retryAfter}: BurstState): void {
+  if (retryAfter === undefined) return;
+  const text = `The key allows ${burst} calls in ${BURST_WINDOW} s.`;
+  throw new ServiceError('rate-limited', text, {retryAfter});
+}
+
+async function consume(limiter: RateLimiterMemory, name: string): Promise<BurstState> {
   try {
-    return await limiter.consume(name);
+    const state = await limiter.consume(name);
+    return {left: state.remainingPoints, resets: Math.ceil(state.msBeforeNext / 1000)};
   } catch (state) {
     // The limiter rejects with its state when the window is used up, and with an Error for a bug.
     if (!(state instanceof RateLimiterRes)) throw state;
+    const resets = Math.max(1, Math.ceil(state.msBeforeNext / 1000));
     // Spread over a second more, or all that were refused come back at the same instant.
-    const seconds = Math.ceil(state.msBeforeNext / 1000) + randomInt(2);
-    throw new ServiceError('rate-limited', text, {retryAfter: Math.max(1, seconds)});
+    return {left: 0, resets, retryAfter: resets + randomInt(2)};
   }
 }

@@ -12,6 +12,11 @@ export interface Facts extends RequestIds {
   problem?: ProblemCode;
 }
 
-export function factsOf(res: Response): Facts {
-  return res.locals as Facts;
+/** What the problem writer sends along with a refusal for now; nothing for the log. */
+export interface RefusalHeaders {
+  headersOf429?: () => Readonly<Record<string, string>>;
+}
+
+export function factsOf(res: Response): Facts & RefusalHeaders {
+  return res.locals as Facts & RefusalHeaders;
 }

@@ -6,7 +6,8 @@ import {readJson} from '../contract/read-json.ts';
 import {compileContract, validateRequest} from '../contract/validate.ts';
 import type {Deps} from '../deps.ts';
 import {ServiceError} from '../errors.ts';
-import type {BurstState, Bursts} from './burst.ts';
+import * as entries from '../ledger/entries.ts';
+import {refuseBeyond, type Bursts, type BurstState} from './burst.ts';
 import type {Call, Caller, Handler, Reply, Routes} from './call.ts';
 import {createCallerCheck, refuseKeyInBody} from './callers.ts';
 import {factsOf} from './facts.ts';
@@ -88,7 +89,14 @@ function mountOne(
     let burst: BurstState | null = null;
     if (caller.kind === 'key') {
       facts.key = caller.key.id;
-      burst = await bursts.count(caller.key.id, caller.key.burst);
+      const {key} = caller;
+      const state = await bursts.count(key.id, key.burst);
+      facts.headersOf429 = () => {
+        const month = entries.left(deps.database.driver, key, at);
+        return rateLimitFields({burst: key.burst, state, month, cost: 0, at});
+      };
+      refuseBeyond(key.burst, state);
+      burst = state;
     } else if (caller.kind === 'person') {
       facts.person = caller.person.personId;
     }

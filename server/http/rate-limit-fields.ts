@@ -19,10 +19,9 @@ export interface RateLimits {
  * they do not know, so both are sent. Pairs are no unit of the draft's registry: a parameter of our
  * own says so.
  */
-export function rateLimitFields(limits: RateLimits): {
-  RateLimit: string;
-  'RateLimit-Policy': string;
-} {
+export function rateLimitFields(
+  limits: RateLimits,
+): Record<'RateLimit' | 'RateLimit-Policy', string> {
   const {burst, state, month, cost, at} = limits;
   const {start, end} = periodOf(at);
   const length = (Date.parse(end) - Date.parse(start)) / 1000;
