@@ -13,10 +13,10 @@ import {
 } from '@angular/core';
 import {Announcer} from '../states/announcer';
 import {ColourScheme} from '../theme/colour-scheme';
-import {contoursOf} from './contour-rings';
+import {contoursOf, type Contour} from './contour-rings';
 import {readInks} from './inks';
 import {bleed, indexToPixel, nearestPoint, sheet, xOf, yOf, type Layout} from './layout';
-import {bandColours, potentialScale, strengthScale, type Quantity} from './levels';
+import {bandColours, potentialScale, strengthScale, type Quantity, type Scale} from './levels';
 import {paint, type Picture} from './paint';
 import {readOut, spoken, type GridPoint} from './read-out';
 import type {Section} from './section';
@@ -28,6 +28,16 @@ const KEYS: Readonly<Record<string, readonly [number, number]>> = {
   ArrowDown: [0, -1],
 };
 const BOX = {width: 178, height: 92};
+
+function mapOf(
+  values: Float64Array | null,
+  counts: readonly [number, number],
+  scaleOf: (values: Float64Array) => Scale,
+): {readonly scale: Scale; readonly contours: readonly Contour[]} {
+  const known = values ?? new Float64Array();
+  const scale = scaleOf(known);
+  return {scale, contours: known.length > 0 ? contoursOf(known, counts, scale.levels) : []};
+}
 
 /** A map of a plane of grid values: bands, labelled contours, charges, arrows, and a read-out. */
 @Component({
@@ -61,20 +71,23 @@ export class FieldPicture {
   protected readonly point = signal<GridPoint | null>(null);
   protected readonly isTouched = signal(false);
 
+  private readonly isPotential = computed(() => this.quantity() === 'potential');
   private readonly values = computed(
     () =>
-      (this.quantity() === 'potential' ? this.section().potential : this.section().strength) ??
+      (this.isPotential() ? this.section().potential : this.section().strength) ??
       new Float64Array(),
   );
-  readonly scale = computed(() =>
-    this.quantity() === 'potential'
-      ? potentialScale(this.values(), this.bands())
-      : strengthScale(this.values()),
-  );
-  private readonly contours = computed(() =>
-    this.values().length > 0
-      ? contoursOf(this.values(), this.section().counts, this.scale().levels)
-      : [],
+  private readonly potentialMap = computed(() => {
+    const {potential, counts} = this.section();
+    return mapOf(potential, counts, values => potentialScale(values, this.bands()));
+  });
+  private readonly strengthMap = computed(() => {
+    const {strength, counts} = this.section();
+    return mapOf(strength, counts, strengthScale);
+  });
+  /** Each quantity keeps its contours, so that going back and forth between the two is quick. */
+  private readonly map = computed(() =>
+    this.isPotential() ? this.potentialMap() : this.strengthMap(),
   );
   protected readonly layout = computed<Layout | null>(() => {
     const {width, height} = this.size();
@@ -114,7 +127,7 @@ export class FieldPicture {
       const layout = this.layout();
       this.scheme.isDark();
       this.fontsReady();
-      this.contours();
+      this.map();
       this.lines();
       this.hasArrows();
       const {ratio} = this.size();
@@ -129,17 +142,17 @@ export class FieldPicture {
 
   /** What is drawn now, for saving it at another size. */
   picture(layout: Layout): Picture {
-    const isPotential = this.quantity() === 'potential';
+    const {scale, contours} = this.map();
     const {units} = this.section();
     return {
       section: this.section(),
       values: this.values(),
-      scale: this.scale(),
-      contours: this.contours(),
-      colours: bandColours(this.scale(), this.scheme.isDark(), this.reach()),
+      scale,
+      contours,
+      colours: bandColours(scale, this.scheme.isDark(), this.reach()),
       layout,
       inks: readInks(this.host),
-      title: isPotential ? `V, ${units.potential ?? 'V'}` : `|E|, ${units.field ?? 'V/m'}`,
+      title: this.isPotential() ? `V, ${units.potential ?? 'V'}` : `|E|, ${units.field ?? 'V/m'}`,
       hasArrows: this.hasArrows(),
       lines: this.lines(),
     };

@@ -120,5 +120,6 @@ export function nearestPoint(
   const i = Math.round((d * (x - e) - c * (y - f)) / determinant);
   const j = Math.round((a * (y - f) - b * (x - e)) / determinant);
   const isInside = i >= 0 && j >= 0 && i < section.counts[0] && j < section.counts[1];
-  return isInside ? {i, j} : null;
+  // Rounding may have left a zero with a sign.
+  return isInside ? {i: i + 0, j: j + 0} : null;
 }

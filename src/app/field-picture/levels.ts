@@ -102,6 +102,7 @@ export function potentialScale(values: Float64Array, bands = BANDS): Scale {
   return scaleOf(levels, all, positionOf, decimalsOf(step), 'diverging');
 }
 
+/** Steps of a decade, the densest first; the first only where there is little more than one. */
 const LADDERS = [[1, 1.5, 2, 3, 5, 7], [1, 2, 3, 5, 7], [1, 2, 5], [1, 3], [1]];
 
 /** A logarithmic scale, 1-2-3-5-7 a decade or fewer where there are many; linear for little variation. */
@@ -126,7 +127,7 @@ export function strengthScale(values: Float64Array): Scale {
     }
     return out;
   };
-  const levels = LADDERS.map(decades).find(ladder => ladder.length <= 13) ?? [];
+  const levels = LADDERS.map(decades).find((ladder, k) => ladder.length <= (k === 0 ? 8 : 13)) ?? [];
   const last = levels.length - 1;
   const share = (value: number): number => {
     const place = levels.findIndex(level => value < level);

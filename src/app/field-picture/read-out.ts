@@ -15,7 +15,7 @@ export interface ReadOutRow {
 
 /** Enough decimals to tell neighbouring points apart. */
 function place(value: number, step: number): string {
-  const decimals = step > 0 ? Math.min(6, decimalsOf(step / 2)) : 1;
+  const decimals = step > 0 ? Math.min(6, decimalsOf(step)) : 1;
   return plain({
     digits: value
       .toFixed(decimals)

@@ -1,5 +1,5 @@
 import {ChangeDetectionStrategy, Component, inject, signal} from '@angular/core';
-import {FormControl, ReactiveFormsModule} from '@angular/forms';
+import {FormControl, FormGroup, ReactiveFormsModule} from '@angular/forms';
 import {toSignal} from '@angular/core/rxjs-interop';
 import {MatButton} from '@angular/material/button';
 import {
@@ -34,7 +34,7 @@ import {KeysApi} from './keys-api';
     ReactiveFormsModule,
   ],
   template: `
-    <form (ngSubmit)="revoke()">
+    <form [formGroup]="form" (ngSubmit)="revoke()">
       <h2 mat-dialog-title>Revoke “{{ key.name }}”</h2>
       <mat-dialog-content>
         <p>
@@ -53,7 +53,7 @@ import {KeysApi} from './keys-api';
         </dl>
         <mat-form-field>
           <mat-label>Type the name of the key: {{ key.name }}</mat-label>
-          <input matInput [formControl]="name" autocomplete="off" cdkFocusInitial />
+          <input matInput formControlName="name" autocomplete="off" cdkFocusInitial />
         </mat-form-field>
         @if (problem(); as problem) {
           <div class="failed" role="alert">
@@ -77,8 +77,8 @@ export class RevokeKeyDialog {
   private readonly dialog = inject<MatDialogRef<RevokeKeyDialog, boolean>>(MatDialogRef);
   protected readonly key = inject<Key>(MAT_DIALOG_DATA);
 
-  protected readonly name = new FormControl('', {nonNullable: true});
-  protected readonly typed = toSignal(this.name.valueChanges, {initialValue: ''});
+  protected readonly form = new FormGroup({name: new FormControl('', {nonNullable: true})});
+  protected readonly typed = toSignal(this.form.controls.name.valueChanges, {initialValue: ''});
   protected readonly isBusy = signal(false);
   protected readonly problem = signal<Problem | null>(null);
   protected readonly lastUsed = this.key.lastUsed
