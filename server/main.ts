@@ -44,6 +44,7 @@ const engine = createEngine({
   limits: config.limits,
   maxQueue: config.limits.queuedCalls,
 });
+await engine.warmUp();
 const groupCommit = new GroupCommit(database.driver);
 const deps: Deps = {config, database, engine, groupCommit, log, now: () => new Date()};
 const server = createHttpServer(deps);

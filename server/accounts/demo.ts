@@ -93,9 +93,11 @@ async function seedKeys(database: Database, owner: apiKeys.Maker, now: Date): Pr
     expiresAt: rfc3339(before(30)),
   });
   const old = await make('Old batch host', before(80), {monthlyLimit: 4e11});
-  apiKeys.revoke(database, owner.accountId, old.id, before(40));
+  const revokedAt = before(40);
+  apiKeys.revoke(database, owner.accountId, old.id, revokedAt);
   apiKeys.rotate(database, owner, twin.id, 24, now);
-  seedHistory(database, owner, [sweep, twin, fair, old], now);
+  const ended = {...old, revokedAt: rfc3339(revokedAt)};
+  seedHistory(database, owner, [sweep, twin, fair, ended], now);
   return demo.secret;
 }
 
@@ -113,8 +115,8 @@ function seedHistory(database: Database, owner: apiKeys.Maker, keys: Key[], now:
       const isWeekend = new Date(day).getUTCDay() % 6 === 0;
       for (const key of keys) {
         if (day < Date.parse(key.createdAt) || random() < (isWeekend ? 0.7 : 0.1)) continue;
-        const ends = Date.parse(key.revokedAt ?? key.expiresAt ?? '') || Infinity;
-        if (day > ends) continue;
+        // A day earlier than the end, so that no call of the last day falls behind it.
+        if (day + DAY > Date.parse(key.revokedAt ?? key.expiresAt ?? rfc3339(now))) continue;
         const spender = {
           accountId: owner.accountId,
           lineageId: key.id,
