@@ -28,6 +28,9 @@ export function createApp(deps: Deps): Express {
   app.disable('etag');
   app.set('env', 'production');
   app.set('query parser', false);
+  // A path has one spelling, that of the contract.
+  app.set('case sensitive routing', true);
+  app.set('strict routing', true);
   app.set('trust proxy', config.trustProxy);
 
   const common = apiHeaders(config.publicUrl.startsWith('https:'));

@@ -52,7 +52,7 @@ export function refuseOtherMethods(app: Express, path: string, methods: readonly
   const allow = [...methods, ...(methods.includes('GET') ? ['HEAD'] : []), 'OPTIONS'].join(', ');
   app.all(path, (req, res) => {
     if (req.method === 'OPTIONS') {
-      res.writeHead(204, {Allow: allow}).end();
+      res.writeHead(204, {...headersOf(res), Allow: allow}).end();
       return;
     }
     throw new ServiceError(

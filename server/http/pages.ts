@@ -18,6 +18,16 @@ const swaggerFolder = dirname(
   createRequire(import.meta.url).resolve('swagger-ui-dist/package.json'),
 );
 const publicFolder = fileURLToPath(new URL('./public/', import.meta.url));
+const docs = readFileSync(join(publicFolder, 'docs.html'));
+/** What these pages load. The folders hold more, which is nobody's affair. */
+const documentFiles: readonly (readonly [name: string, file: string])[] = [
+  ...['document.css', 'reference.css', 'reference.js'].map(
+    name => [name, join(publicFolder, name)] as const,
+  ),
+  ...['swagger-ui.css', 'swagger-ui-bundle.js'].map(
+    name => [name, join(swaggerFolder, name)] as const,
+  ),
+];
 
 /** What is not an operation: the contract itself, its reference page, the problems, the console. */
 export function mountPages(app: Express, deps: Deps): void {
@@ -34,18 +44,23 @@ function mountReference(app: Express, headers: Headers): void {
   });
   refuseOtherMethods(app, '/openapi.yaml', ['GET']);
 
-  app.use('/docs', express.static(publicFolder, {index: false}));
-  app.use('/docs', express.static(swaggerFolder, {index: false}));
-  app.get('/docs', (_req, res) =>
-    sendPage(res, headers, readFileSync(join(publicFolder, 'docs.html'))),
-  );
+  app.get('/docs', (_req, res) => sendPage(res, headers, docs));
+  refuseOtherMethods(app, '/docs', ['GET']);
+  for (const [name, file] of documentFiles) {
+    app.get(`/docs/${name}`, (_req, res, next) => {
+      res.sendFile(file, {acceptRanges: false, cacheControl: false}, next);
+    });
+    refuseOtherMethods(app, `/docs/${name}`, ['GET']);
+  }
 
   app.get('/problems', (_req, res) => sendPage(res, headers, problemListPage()));
+  refuseOtherMethods(app, '/problems', ['GET']);
   app.get('/problems/:code', ({params}, res) => {
     const code = Object.keys(problemCatalogue).find(one => one === params.code);
     if (!code) throw new ServiceError('not-found', 'There is no problem of this name.');
     sendPage(res, headers, problemPage(code as keyof typeof problemCatalogue));
   });
+  refuseOtherMethods(app, '/problems/:code', ['GET']);
 }
 
 function sendPage(res: Response, headers: Headers, page: string | Buffer): void {
