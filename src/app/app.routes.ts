@@ -8,6 +8,11 @@ export const routes: Routes = [
     loadComponent: () => import('./session/sign-in-page').then(page => page.SignInPage),
   },
   {
+    path: 'welcome',
+    title: 'Choose a password',
+    loadComponent: () => import('./session/welcome-page').then(page => page.WelcomePage),
+  },
+  {
     path: '',
     loadComponent: () => import('./frame/frame').then(frame => frame.Frame),
     children: [

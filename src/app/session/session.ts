@@ -36,6 +36,13 @@ export class Session {
     return this.lastPerson === null || this.lastPerson === id;
   }
 
+  /** Uses up a one-time link: sets the password of the person it was made for, and signs in. */
+  async redeem(link: string, password: string): Promise<void> {
+    const answer = this.http.post<SessionAnswer>('/console/password', {link, password});
+    this.current.set(await firstValueFrom(answer));
+    this.restored = Promise.resolve();
+  }
+
   async signOut(): Promise<void> {
     await firstValueFrom(this.http.delete<void>(PATH));
     this.forget();
