@@ -47,8 +47,8 @@ function mountReference(app: Express, headers: Headers): void {
   app.get('/docs', (_req, res) => sendPage(res, headers, docs));
   refuseOtherMethods(app, '/docs', ['GET']);
   for (const [name, file] of documentFiles) {
-    app.get(`/docs/${name}`, (_req, res, next) => {
-      res.sendFile(file, {acceptRanges: false, cacheControl: false}, next);
+    app.get(`/docs/${name}`, (_req, res) => {
+      res.sendFile(file, {acceptRanges: false, cacheControl: false});
     });
     refuseOtherMethods(app, `/docs/${name}`, ['GET']);
   }
