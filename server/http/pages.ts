@@ -14,9 +14,9 @@ import {refuseOtherMethods} from './mount.ts';
 import {problemListPage, problemPage} from './problem-pages.ts';
 import {consoleHeaders, documentHeaders, type Headers} from './security-headers.ts';
 
-const swaggerFolder = dirname(
-  createRequire(import.meta.url).resolve('swagger-ui-dist/package.json'),
-);
+const folderOf = (name: string, file = ''): string =>
+  join(dirname(createRequire(import.meta.url).resolve(`${name}/package.json`)), file);
+const swaggerFolder = folderOf('swagger-ui-dist');
 const publicFolder = fileURLToPath(new URL('./public/', import.meta.url));
 const docs = readFileSync(join(publicFolder, 'docs.html'));
 /** What these pages load. The folders hold more, which is nobody's affair. */
@@ -27,7 +27,14 @@ const documentFiles: readonly (readonly [name: string, file: string])[] = [
   ...['swagger-ui.css', 'swagger-ui-bundle.js'].map(
     name => [name, join(swaggerFolder, name)] as const,
   ),
+  fontFile('bricolage-grotesque', 'bricolage-grotesque-latin-opsz-normal.woff2'),
+  fontFile('hanken-grotesk', 'hanken-grotesk-latin-wght-normal.woff2'),
+  fontFile('jetbrains-mono', 'jetbrains-mono-latin-wght-normal.woff2'),
 ];
+
+function fontFile(face: string, name: string): readonly [name: string, file: string] {
+  return [name, folderOf(`@fontsource-variable/${face}`, `files/${name}`)];
+}
 
 /** What is not an operation: the contract itself, its reference page, the problems, the console. */
 export function mountPages(app: Express, deps: Deps): void {
@@ -82,7 +89,15 @@ function mountConsole(app: Express, isHttps: boolean): void {
   const index = readFileSync(join(folder, 'index.html'), 'utf8');
   app.use(compression());
   // Names carry a hash of the content, so they never change what they mean.
-  app.use(express.static(folder, {index: false, immutable: true, maxAge: '1y', redirect: false}));
+  app.use(
+    express.static(folder, {
+      index: false,
+      immutable: true,
+      maxAge: '1y',
+      redirect: false,
+      acceptRanges: false,
+    }),
+  );
   app.get('/{*page}', (req, res, next) => {
     const isApi = /^\/(v1|console)(\/|$)/.test(req.path);
     if (isApi || /\.\w+$/.test(req.path) || !req.accepts('html') || req.headers.accept === '*/*') {

@@ -1,4 +1,8 @@
 /* global SwaggerUIBundle */
+const dark = matchMedia('(prefers-color-scheme: dark)');
+const follow = () => document.documentElement.classList.toggle('dark-mode', dark.matches);
+dark.addEventListener('change', follow);
+follow();
 SwaggerUIBundle({
   url: '/openapi.yaml',
   dom_id: '#reference',
