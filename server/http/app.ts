@@ -8,6 +8,7 @@ import express, {
 import {problemCatalogue} from '../../shared/problem-catalogue.ts';
 import type {Deps} from '../deps.ts';
 import {ServiceError} from '../errors.ts';
+import {hideKeys} from '../ledger/key-form.ts';
 import {createRoutes} from '../routes/index.ts';
 import {Bursts} from './burst.ts';
 import {keepHeaders, setHeaders} from './common-headers.ts';
@@ -97,7 +98,13 @@ function problemWriter({config, log}: Deps): ErrorRequestHandler {
     facts.problem = error.code;
     if (error.code === 'internal') {
       const {name, message, stack} = thrown instanceof Error ? thrown : new Error(String(thrown));
-      log.error({requestId: facts.requestId, operation: facts.operation, name, message, stack});
+      log.error({
+        requestId: facts.requestId,
+        operation: facts.operation,
+        name,
+        message: hideKeys(message),
+        stack: hideKeys(stack ?? ''),
+      });
     }
     if (res.headersSent) {
       res.destroy();
@@ -121,6 +128,10 @@ function toServiceError(thrown: unknown): ServiceError {
   // Express's router throws a URIError for a path that can not be decoded.
   if (thrown instanceof URIError) {
     return new ServiceError('bad-request', 'The address is not well encoded.');
+  }
+  // What Express throws for a file that is not as If-Match or If-Unmodified-Since want it.
+  if (thrown instanceof Error && thrown.name === 'PreconditionFailedError') {
+    return new ServiceError('bad-request', 'The conditions in the headers do not hold.');
   }
   return internalError();
 }

@@ -1,7 +1,8 @@
 import {randomUUID} from 'node:crypto';
 import type {IncomingMessage} from 'node:http';
 
-const REQUEST_ID = /^[A-Za-z0-9._-]{1,64}$/;
+// Not a key: it would be in every log on the way.
+const REQUEST_ID = /^(?!fst_)[A-Za-z0-9._-]{1,64}$/;
 // W3C Trace Context §3.2: version 00, neither id all zero.
 const TRACEPARENT = /^00-(?!0{32})([0-9a-f]{32})-(?!0{16})[0-9a-f]{16}-[0-9a-f]{2}$/;
 

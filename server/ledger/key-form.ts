@@ -9,6 +9,13 @@ import {crc32} from 'node:zlib';
  */
 export const KEY_PATTERN = /^fst_([0-9A-Za-z]{12})_([0-9A-Za-z]{32})([0-9A-Za-z]{6})$/;
 
+const ANY_KEY = /fst_[0-9A-Za-z]{12}_[0-9A-Za-z]{6,}/g;
+
+/** A text for the log: of a key in it, or what looks like one, only the public part is left. */
+export function hideKeys(text: string): string {
+  return text.replaceAll(ANY_KEY, key => `${key.slice(0, 16)}_…`);
+}
+
 const ALPHABET = '0123456789ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz';
 
 export interface NewSecret {
