@@ -6,14 +6,31 @@ export interface Period {
   readonly end: string;
 }
 
+interface Bounded {
+  readonly period: Period;
+  readonly from: number;
+  readonly to: number;
+}
+
+// Asked for on every call, and the same for a month.
+let latest: Bounded | undefined;
+
 /** The month that an instant falls into. */
 export function periodOf(now: Date): Period {
+  const time = now.getTime();
+  if (!latest || time < latest.from || time >= latest.to) latest = boundedMonthOf(now);
+  return latest.period;
+}
+
+function boundedMonthOf(now: Date): Bounded {
   const year = now.getUTCFullYear();
   const month = now.getUTCMonth();
+  const from = new Date(Date.UTC(year, month, 1));
+  const to = new Date(Date.UTC(year, month + 1, 1));
   return {
-    month: now.toISOString().slice(0, 7),
-    start: rfc3339(new Date(Date.UTC(year, month, 1))),
-    end: rfc3339(new Date(Date.UTC(year, month + 1, 1))),
+    period: {month: from.toISOString().slice(0, 7), start: rfc3339(from), end: rfc3339(to)},
+    from: from.getTime(),
+    to: to.getTime(),
   };
 }
 
