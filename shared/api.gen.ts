@@ -1703,8 +1703,8 @@ export interface operations {
                      * @example {
                      *       "columns": {
                      *         "potential": [
-                     *           -2218.8018472109175,
-                     *           -4458.2918498949
+                     *           -2218.801847210916,
+                     *           -4458.074281170797
                      *         ]
                      *       },
                      *       "count": 2,
@@ -1717,7 +1717,7 @@ export interface operations {
                      *       "coincidentCount": 0,
                      *       "accuracy": {
                      *         "method": "direct",
-                     *         "coincidenceDistance": 0
+                     *         "coincidenceDistance": 7.105427357601002e-15
                      *       },
                      *       "cost": {
                      *         "pairs": 1000,
@@ -1728,12 +1728,20 @@ export interface operations {
                      *         "version": "0.1.0",
                      *         "constants": "CODATA 2022"
                      *       },
-                     *       "inputDigest": "sha-256:5e3cba1ff4ec7b5cb7c4b1ff2b2c60a1f7f8bd5f4a7be9cdb1b4b1f9a4d6a001",
-                     *       "resultDigest": "sha-256:8b1f7a2f0b8ddc8f9f43c7f15dbfbf17f0c4f64d1a7de5b06e94c0a7e3d1c002",
+                     *       "inputDigest": "sha-256:05dfaed96f99c7eefab3f67147dbd610cd3a1c1be89b56904bc0fb7c5b4841e1",
+                     *       "resultDigest": "sha-256:92ebcbe6a2cab5710d38d04fb59537d3e2de6acb8e4268d3a6451f617ca6d7b3",
                      *       "notices": [
                      *         {
                      *           "code": "idealised",
-                     *           "detail": "Idealised electrostatics in a uniform, unbounded medium."
+                     *           "detail": "Idealised electrostatics: charges at rest in one uniform, unbounded medium; no breakdown, no space charge, no motion."
+                     *         },
+                     *         {
+                     *           "code": "charges-only",
+                     *           "detail": "Only the charges given are modelled. Conductors at a voltage are not, so peak fields on metal cannot be read from these results."
+                     *         },
+                     *         {
+                     *           "code": "not-a-substitute",
+                     *           "detail": "No substitute for standards, tests or licensed practice in questions of insulation, clearances, exposure or work near live parts."
                      *         }
                      *       ]
                      *     }
@@ -1885,31 +1893,31 @@ export interface operations {
                      *       "columns": {
                      *         "potential": [
                      *           null,
-                     *           1169.3
+                     *           1143.4575259844166
                      *         ],
                      *         "fieldX": [
                      *           null,
-                     *           35.2
+                     *           30.854957589351457
                      *         ],
                      *         "fieldY": [
                      *           null,
-                     *           -0.1
+                     *           0.09481759431050034
                      *         ],
                      *         "fieldZ": [
                      *           null,
-                     *           -90.4
+                     *           -95.92435284129728
                      *         ],
                      *         "fieldMagnitude": [
                      *           null,
-                     *           97
+                     *           100.76467072460748
                      *         ],
                      *         "potentialBound": [
                      *           null,
-                     *           1.2e-12
+                     *           4.128022467423346e-13
                      *         ],
                      *         "fieldBound": [
                      *           null,
-                     *           1.4e-13
+                     *           9.20688971701476e-14
                      *         ]
                      *       },
                      *       "count": 2,
@@ -1929,23 +1937,31 @@ export interface operations {
                      *       "coincidentCount": 1,
                      *       "accuracy": {
                      *         "method": "direct",
-                     *         "coincidenceDistance": 0
+                     *         "coincidenceDistance": 5.603532743925174e-14
                      *       },
                      *       "cost": {
                      *         "pairs": 1000,
                      *         "queuedMilliseconds": 0,
-                     *         "computedMilliseconds": 0.1
+                     *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
                      *         "version": "0.1.0",
                      *         "constants": "CODATA 2022"
                      *       },
-                     *       "inputDigest": "sha-256:5e3cba1ff4ec7b5cb7c4b1ff2b2c60a1f7f8bd5f4a7be9cdb1b4b1f9a4d6a001",
-                     *       "resultDigest": "sha-256:8b1f7a2f0b8ddc8f9f43c7f15dbfbf17f0c4f64d1a7de5b06e94c0a7e3d1c002",
+                     *       "inputDigest": "sha-256:59cc0a5e3ffad62f81d70beebfba50debcd93e2f3d6c174aaca07b506febc086",
+                     *       "resultDigest": "sha-256:5952a824e9b884b715d78ff9a840678b38d4948e9e5747179106b86f5e53490d",
                      *       "notices": [
                      *         {
                      *           "code": "idealised",
-                     *           "detail": "Idealised electrostatics in a uniform, unbounded medium."
+                     *           "detail": "Idealised electrostatics: charges at rest in one uniform, unbounded medium; no breakdown, no space charge, no motion."
+                     *         },
+                     *         {
+                     *           "code": "charges-only",
+                     *           "detail": "Only the charges given are modelled. Conductors at a voltage are not, so peak fields on metal cannot be read from these results."
+                     *         },
+                     *         {
+                     *           "code": "not-a-substitute",
+                     *           "detail": "No substitute for standards, tests or licensed practice in questions of insulation, clearances, exposure or work near live parts."
                      *         }
                      *       ]
                      *     }
@@ -2051,13 +2067,13 @@ export interface operations {
                      *           "id": "bell",
                      *           "charge": -30,
                      *           "force": {
-                     *             "x": 0.88484,
+                     *             "x": 0.8847990386018216,
                      *             "y": 0,
-                     *             "z": -0.47645
+                     *             "z": -0.47643025155482704
                      *           },
                      *           "torque": {
                      *             "x": 0,
-                     *             "y": 51.32,
+                     *             "y": 51.31834423890566,
                      *             "z": 0
                      *           },
                      *           "about": {
@@ -2070,13 +2086,13 @@ export interface operations {
                      *           "id": "bracket",
                      *           "charge": 13,
                      *           "force": {
-                     *             "x": -0.88484,
+                     *             "x": -0.8847990386018217,
                      *             "y": 0,
-                     *             "z": 0.47645
+                     *             "z": 0.4764302515548272
                      *           },
                      *           "torque": {
                      *             "x": 0,
-                     *             "y": -51.32,
+                     *             "y": -51.31834423890567,
                      *             "z": 0
                      *           },
                      *           "about": {
@@ -2086,17 +2102,17 @@ export interface operations {
                      *           }
                      *         }
                      *       ],
-                     *       "energy": -59.35,
+                     *       "energy": -59.34959705082987,
                      *       "interactions": [
                      *         {
                      *           "of": "bell",
                      *           "on": "bracket",
                      *           "force": {
-                     *             "x": -0.88484,
+                     *             "x": -0.8847990386018217,
                      *             "y": 0,
-                     *             "z": 0.47645
+                     *             "z": 0.4764302515548272
                      *           },
-                     *           "energy": -59.35
+                     *           "energy": -59.34959705082987
                      *         }
                      *       ],
                      *       "units": {
@@ -2108,7 +2124,7 @@ export interface operations {
                      *       },
                      *       "accuracy": {
                      *         "method": "direct",
-                     *         "coincidenceDistance": 0
+                     *         "coincidenceDistance": 2.6660151455011122e-14
                      *       },
                      *       "cost": {
                      *         "pairs": 1000,
@@ -2119,12 +2135,20 @@ export interface operations {
                      *         "version": "0.1.0",
                      *         "constants": "CODATA 2022"
                      *       },
-                     *       "inputDigest": "sha-256:5e3cba1ff4ec7b5cb7c4b1ff2b2c60a1f7f8bd5f4a7be9cdb1b4b1f9a4d6a001",
-                     *       "resultDigest": "sha-256:8b1f7a2f0b8ddc8f9f43c7f15dbfbf17f0c4f64d1a7de5b06e94c0a7e3d1c002",
+                     *       "inputDigest": "sha-256:91cd431c35e4e997c6e8a6153ec8f9ff0310bd9f0468a759ef2ac6f24e14dcf7",
+                     *       "resultDigest": "sha-256:db433b7794690a7b6f570ca2ad93f6cecedf68983a3b64aede7b5b23285056e7",
                      *       "notices": [
                      *         {
                      *           "code": "idealised",
-                     *           "detail": "Idealised electrostatics in a uniform, unbounded medium."
+                     *           "detail": "Idealised electrostatics: charges at rest in one uniform, unbounded medium; no breakdown, no space charge, no motion."
+                     *         },
+                     *         {
+                     *           "code": "charges-only",
+                     *           "detail": "Only the charges given are modelled. Conductors at a voltage are not, so peak fields on metal cannot be read from these results."
+                     *         },
+                     *         {
+                     *           "code": "not-a-substitute",
+                     *           "detail": "No substitute for standards, tests or licensed practice in questions of insulation, clearances, exposure or work near live parts."
                      *         }
                      *       ]
                      *     }
@@ -2264,18 +2288,26 @@ export interface operations {
                      *       "cost": {
                      *         "pairs": 1000,
                      *         "queuedMilliseconds": 0,
-                     *         "computedMilliseconds": 0.02
+                     *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
                      *         "version": "0.1.0",
                      *         "constants": "CODATA 2022"
                      *       },
-                     *       "inputDigest": "sha-256:5e3cba1ff4ec7b5cb7c4b1ff2b2c60a1f7f8bd5f4a7be9cdb1b4b1f9a4d6a001",
-                     *       "resultDigest": "sha-256:8b1f7a2f0b8ddc8f9f43c7f15dbfbf17f0c4f64d1a7de5b06e94c0a7e3d1c002",
+                     *       "inputDigest": "sha-256:1dc096e964b1fff54eff6d7e60701eebb5235cc4bea659c9f496278a4110edd0",
+                     *       "resultDigest": "sha-256:16fe6e5394ef11bc96836520dc020f541a5203453e2ebfb54752c6c389e37122",
                      *       "notices": [
                      *         {
                      *           "code": "idealised",
-                     *           "detail": "Idealised electrostatics in a uniform, unbounded medium."
+                     *           "detail": "Idealised electrostatics: charges at rest in one uniform, unbounded medium; no breakdown, no space charge, no motion."
+                     *         },
+                     *         {
+                     *           "code": "charges-only",
+                     *           "detail": "Only the charges given are modelled. Conductors at a voltage are not, so peak fields on metal cannot be read from these results."
+                     *         },
+                     *         {
+                     *           "code": "not-a-substitute",
+                     *           "detail": "No substitute for standards, tests or licensed practice in questions of insulation, clearances, exposure or work near live parts."
                      *         }
                      *       ]
                      *     }
@@ -2386,7 +2418,7 @@ export interface operations {
                      *       "pairs": 64521,
                      *       "route": "worker",
                      *       "method": "direct",
-                     *       "milliseconds": 2
+                     *       "milliseconds": 65
                      *     }
                      */
                     readonly "application/json": components["schemas"]["Estimate"];
@@ -2826,7 +2858,7 @@ export interface operations {
                      *       "lastUsed": null,
                      *       "predecessor": null,
                      *       "successor": null,
-                     *       "secret": "fst_Lw81kTqP0z5N_00example0not0a0working0key000000c81e"
+                     *       "secret": "fst_Lw81kTqP0z5N_00example0not0a0working0key0000000c81e"
                      *     }
                      */
                     readonly "application/json": components["schemas"]["CreatedKey"];
@@ -2944,7 +2976,7 @@ export interface operations {
                      *       "lastUsed": null,
                      *       "predecessor": null,
                      *       "successor": null,
-                     *       "secret": "fst_Lw81kTqP0z5N_00example0not0a0working0key000000c81e"
+                     *       "secret": "fst_Lw81kTqP0z5N_00example0not0a0working0key0000000c81e"
                      *     }
                      */
                     readonly "application/json": components["schemas"]["CreatedKey"];
@@ -3157,18 +3189,26 @@ export interface operations {
                      *       "cost": {
                      *         "pairs": 1000,
                      *         "queuedMilliseconds": 0,
-                     *         "computedMilliseconds": 0.02
+                     *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
                      *         "version": "0.1.0",
                      *         "constants": "CODATA 2022"
                      *       },
-                     *       "inputDigest": "sha-256:5e3cba1ff4ec7b5cb7c4b1ff2b2c60a1f7f8bd5f4a7be9cdb1b4b1f9a4d6a001",
-                     *       "resultDigest": "sha-256:8b1f7a2f0b8ddc8f9f43c7f15dbfbf17f0c4f64d1a7de5b06e94c0a7e3d1c002",
+                     *       "inputDigest": "sha-256:1dc096e964b1fff54eff6d7e60701eebb5235cc4bea659c9f496278a4110edd0",
+                     *       "resultDigest": "sha-256:16fe6e5394ef11bc96836520dc020f541a5203453e2ebfb54752c6c389e37122",
                      *       "notices": [
                      *         {
                      *           "code": "idealised",
-                     *           "detail": "Idealised electrostatics in a uniform, unbounded medium."
+                     *           "detail": "Idealised electrostatics: charges at rest in one uniform, unbounded medium; no breakdown, no space charge, no motion."
+                     *         },
+                     *         {
+                     *           "code": "charges-only",
+                     *           "detail": "Only the charges given are modelled. Conductors at a voltage are not, so peak fields on metal cannot be read from these results."
+                     *         },
+                     *         {
+                     *           "code": "not-a-substitute",
+                     *           "detail": "No substitute for standards, tests or licensed practice in questions of insulation, clearances, exposure or work near live parts."
                      *         }
                      *       ]
                      *     }

@@ -13,6 +13,7 @@ export interface Parameter {
   readonly required?: boolean;
   readonly description?: string;
   readonly schema: object;
+  readonly example?: string;
 }
 
 export interface OperationObject {

@@ -180,15 +180,17 @@ async function signIn(baseUrl: string, role: Role): Promise<Visitor> {
   const session = (await response.json()) as Session;
   return {
     session,
-    fetch: (path, init = {}) =>
-      fetch(baseUrl + path, {
-        ...init,
-        headers: {
-          ...(init.body ? {'Content-Type': 'application/json'} : {}),
-          Cookie: cookie,
-          'X-CSRF-Token': session.csrfToken,
-          ...Object.fromEntries(new Headers(init.headers)),
-        },
-      }),
+    fetch: (path, init = {}) => {
+      const headers = new Headers(init.headers);
+      const own = {
+        ...(init.body ? {'Content-Type': 'application/json'} : {}),
+        Cookie: cookie,
+        'X-CSRF-Token': session.csrfToken,
+      };
+      for (const [name, value] of Object.entries(own)) {
+        if (!headers.has(name)) headers.set(name, value);
+      }
+      return fetch(baseUrl + path, {...init, headers});
+    },
   };
 }
