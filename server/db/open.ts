@@ -21,6 +21,8 @@ const pragmas = {
   // NORMAL: a crash of the process loses nothing, a power cut may lose the last moments.
   synchronous: 1,
   foreign_keys: 1,
+  // Or REPLACE would delete a row of the ledger without its trigger being asked.
+  recursive_triggers: 1,
   // The wait for a lock blocks the event loop, so it is short.
   busy_timeout: 250,
   journal_size_limit: 64 * 1024 * 1024,
