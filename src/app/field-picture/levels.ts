@@ -127,7 +127,8 @@ export function strengthScale(values: Float64Array): Scale {
     }
     return out;
   };
-  const levels = LADDERS.map(decades).find((ladder, k) => ladder.length <= (k === 0 ? 8 : 13)) ?? [];
+  const levels =
+    LADDERS.map(decades).find((ladder, k) => ladder.length <= (k === 0 ? 8 : 13)) ?? [];
   const last = levels.length - 1;
   const share = (value: number): number => {
     const place = levels.findIndex(level => value < level);

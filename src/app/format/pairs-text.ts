@@ -6,7 +6,9 @@ import {pairs} from './numbers';
 @Component({
   selector: 'app-pairs',
   imports: [NumberText],
-  template: `<app-number [value]="parts().written" /><span class="unit">{{ parts().unit }}</span>`,
+  template: `<app-number [value]="parts().written" />&ngsp;<span class="variant">{{
+      parts().unit
+    }}</span>`,
   changeDetection: ChangeDetectionStrategy.OnPush,
   host: {'[attr.title]': 'exact()'},
 })

@@ -23,12 +23,12 @@ import type {Problem} from './problem';
           <dd class="num">{{ problem().code }}</dd>
         </div>
         @if (problem().requestId; as id) {
-          <div class="with-copy">
-            <div>
-              <dt>Request id</dt>
-              <dd class="num">{{ id }}</dd>
-            </div>
-            <app-copy-button [text]="id" label="Copy request id" />
+          <div>
+            <dt>Request id</dt>
+            <dd class="with-copy">
+              <span class="num">{{ id }}</span>
+              <app-copy-button [text]="id" label="Copy request id" />
+            </dd>
           </div>
         }
       </dl>
@@ -49,6 +49,8 @@ import type {Problem} from './problem';
       align-items: center;
       justify-content: space-between;
       gap: 8px;
+      margin-block: -8px;
+      margin-inline-end: -8px;
     }
 
     .after {

@@ -30,20 +30,20 @@ const largest = (column: readonly (number | null)[] | undefined): number | null 
           </dd>
         </div>
       }
-      <div class="with-copy">
-        <div>
-          <dt>Result digest</dt>
-          <dd class="num" [title]="run().answer.resultDigest">{{ digest() }}</dd>
-        </div>
-        <app-copy-button [text]="run().answer.resultDigest" label="Copy result digest" />
+      <div>
+        <dt>Result digest</dt>
+        <dd class="with-copy">
+          <span class="num" [title]="run().answer.resultDigest">{{ digest() }}</span>
+          <app-copy-button [text]="run().answer.resultDigest" label="Copy result digest" />
+        </dd>
       </div>
       @if (run().requestId; as id) {
-        <div class="with-copy">
-          <div>
-            <dt>Request id</dt>
-            <dd class="num id" [title]="id">{{ id }}</dd>
-          </div>
-          <app-copy-button [text]="id" label="Copy request id" />
+        <div>
+          <dt>Request id</dt>
+          <dd class="with-copy">
+            <span class="num id" [title]="id">{{ id }}</span>
+            <app-copy-button [text]="id" label="Copy request id" />
+          </dd>
         </div>
       }
     </dl>
@@ -59,7 +59,8 @@ const largest = (column: readonly (number | null)[] | undefined): number | null 
       align-items: center;
       justify-content: space-between;
       gap: 4px;
-      padding-inline-end: 4px;
+      margin-block: -8px -8px;
+      margin-inline-end: -8px;
     }
 
     .id {

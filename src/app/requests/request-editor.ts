@@ -169,7 +169,7 @@ export class RequestEditor {
           theme,
           EditorView.lineWrapping,
           this.nonce === null ? [] : EditorView.cspNonce.of(this.nonce),
-          EditorView.contentAttributes.of({'aria-label': 'Request, JSON'}),
+          EditorView.contentAttributes.of({'aria-label': 'Request, JSON', tabindex: '0'}),
           // Tab is left to the page, so that the keyboard can leave the editor.
           keymap.of([
             {key: 'Mod-Enter', run: () => (this.run.emit(), true)},
