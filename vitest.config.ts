@@ -1,6 +1,12 @@
 import {defineConfig} from 'vitest/config';
 
-const common = {environment: 'node', testTimeout: 60_000, hookTimeout: 60_000} as const;
+const common = {
+  environment: 'node',
+  testTimeout: 60_000,
+  hookTimeout: 60_000,
+  // What is polled for comes soon; on a machine that is busy it may take a little longer.
+  expect: {poll: {timeout: 5000}},
+} as const;
 
 export default defineConfig({
   test: {

@@ -10,6 +10,11 @@ export const withCharges = (more: object) => ({
 const withPlacement = (placement: object) => ({bodies: [{charges, placement}], targets});
 /** A body that is valid, as it is sent. */
 export const text = JSON.stringify(valid);
+const steps = [
+  [1, 0, 0],
+  [0, 1, 0],
+  [0, 0, 1],
+];
 const shear = [1, 0.1, 0, 0, 0, 1, 0, 0, 0, 0, 1, 0, 0, 0, 0, 1];
 const mirror = [-1, 0, 0, 0, 0, 1, 0, 0, 0, 0, 1, 0, 0, 0, 0, 1];
 
@@ -177,11 +182,7 @@ export const meaningless: readonly BadBody[] = [
       targets: {
         grid: {
           origin: [0, 0, 0],
-          steps: [
-            [0, 0, 0],
-            [0, 1, 0],
-            [0, 0, 1],
-          ],
+          steps: [[0, 0, 0], ...steps.slice(1)],
           counts: [2, 1, 1],
         },
       },
@@ -219,11 +220,7 @@ export const tooMuch: readonly BadBody[] = [
       targets: {
         grid: {
           origin: [0, 0, 9],
-          steps: [
-            [1, 0, 0],
-            [0, 1, 0],
-            [0, 0, 1],
-          ],
+          steps,
           counts: [500, 400, 1],
         },
       },
