@@ -24,8 +24,8 @@ describe('a fault of our own', () => {
   });
 
   test.each([
-    ['an error', new Error('at /work/secret.ts:1 SELECT 1')],
-    ['something that is no error', 'at /work/secret.ts:1 SELECT 1'],
+    ['an error', new Error('at /srv/secret.ts:1 SELECT 1')],
+    ['something that is no error', 'at /srv/secret.ts:1 SELECT 1'],
     ['nothing', undefined],
     ['an error with a status', Object.assign(new Error('teapot'), {status: 418, expose: true})],
   ])('that throws %s is answered all the same', async (_what, thrown) => {

@@ -7,7 +7,7 @@ import type {TestService} from './service.ts';
 
 // Stack frames, files, statements of the database, and what drivers say.
 const INNARDS =
-  /\bat \S+ \(|\.[jt]s:\d|node_modules|\/(work|home|tmp|usr|var)\/|\bSELECT .*\bFROM |\bINSERT INTO |\bUPDATE .*\bSET |\bDELETE FROM |SQLITE|no such table/;
+  /\bat \S+ \(|\.[jt]s:\d|node_modules|\/(home|opt|srv|tmp|usr|var)\/|\bSELECT .*\bFROM |\bINSERT INTO |\bUPDATE .*\bSET |\bDELETE FROM |SQLITE|no such table/;
 // These come from before an operation is known, so no operation declares them.
 const UNDECLARED: readonly ProblemCode[] = ['method-not-allowed', 'url-too-long'];
 
@@ -35,6 +35,7 @@ export async function expectProblem(
   expect(faultsOf(problemSchema, problem), text).toEqual([]);
   expect(problem.instance).toBe(headers.get('x-request-id'));
   expect(text).not.toMatch(INNARDS);
+  expect(text).not.toContain(process.cwd());
   expectSafeHeaders(headers);
   expect(headers.get('cache-control')).toBe('no-store');
   await expectExplained(service, problem);
