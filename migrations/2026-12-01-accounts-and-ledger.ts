@@ -130,6 +130,7 @@ const statements: readonly string[] = [
     created_at TEXT NOT NULL,
     PRIMARY KEY (account_id, operation, key)
   ) STRICT, WITHOUT ROWID`,
+  'CREATE INDEX idempotency_by_entry ON idempotency (entry_id)',
   'CREATE INDEX idempotency_by_age ON idempotency (created_at)',
 ];
 

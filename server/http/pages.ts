@@ -1,5 +1,6 @@
 import {randomBytes} from 'node:crypto';
 import {existsSync, readFileSync} from 'node:fs';
+import type {ServerResponse} from 'node:http';
 import {createRequire} from 'node:module';
 import {dirname, join} from 'node:path';
 import {fileURLToPath} from 'node:url';
@@ -83,19 +84,23 @@ function consoleFolder(): string | null {
   return found.find(folder => existsSync(join(folder, 'index.html'))) ?? null;
 }
 
+/** Names with a hash of the content never change what they mean; the others are asked for again. */
+function setCaching(res: ServerResponse, path: string): void {
+  const isHashed = /-[0-9A-Z]{8}\.\w+$/.test(path);
+  res.setHeader('Cache-Control', isHashed ? 'public, max-age=31536000, immutable' : 'no-cache');
+}
+
 function mountConsole(app: Express, isHttps: boolean): void {
   const folder = consoleFolder();
   if (!folder) return; // In development ng serve has it.
   const index = readFileSync(join(folder, 'index.html'), 'utf8');
   app.use(compression());
-  // Names carry a hash of the content, so they never change what they mean.
   app.use(
     express.static(folder, {
       index: false,
-      immutable: true,
-      maxAge: '1y',
       redirect: false,
-      acceptRanges: false,
+      cacheControl: false,
+      setHeaders: setCaching,
     }),
   );
   app.get('/{*page}', (req, res, next) => {
