@@ -100,6 +100,7 @@ function mountConsole(app: Express, isHttps: boolean): void {
       index: false,
       redirect: false,
       cacheControl: false,
+      acceptRanges: false,
       setHeaders: setCaching,
     }),
   );
