@@ -41,6 +41,11 @@ export const routes: Routes = [
           import('./reference/reference.routes').then(file => file.referenceRoutes),
       },
       {
+        path: 'no-answer',
+        title: 'No answer',
+        loadComponent: () => import('./states/no-answer-page').then(page => page.NoAnswerPage),
+      },
+      {
         path: '**',
         title: 'Not found',
         loadComponent: () => import('./states/not-found-page').then(page => page.NotFoundPage),

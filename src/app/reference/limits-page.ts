@@ -80,6 +80,7 @@ import {ChangeDetectionStrategy, Component} from '@angular/core';
 export class LimitsPage {
   protected readonly rows = [
     {what: 'Body of a request', limit: '8 MiB'},
+    {what: 'Charges of one body, points of one list', limit: '100 000'},
     {what: 'Pairs of one call', limit: '500 000 000'},
     {what: 'Rows of an answer in JSON', limit: '200 000'},
     {what: 'Bodies in a call for forces', limit: '200'},

@@ -30,6 +30,7 @@ function setUp(): {http: HttpTestingController; router: Router; session: Session
       provideHttpClientTesting(),
       provideRouter([
         {path: 'sign-in', component: Page},
+        {path: 'no-answer', component: Page},
         {path: '**', component: Page, canActivate: [sessionGuard]},
       ]),
     ],
@@ -61,6 +62,21 @@ describe('the session guard', () => {
     const harness = await arrived;
     await harness.navigateByUrl('/keys');
     http.expectNone('/console/session');
+    expect(router.url).toBe('/keys');
+  });
+
+  it('says so where the service does not answer, and asks again the next time', async () => {
+    const {http, router} = setUp();
+    const arrived = RouterTestingHarness.create('/usage');
+    await settle();
+    http.expectOne('/console/session').flush(null, {status: 503, statusText: 'Unavailable'});
+    const harness = await arrived;
+    expect(router.lastSuccessfulNavigation()?.finalUrl?.toString()).toBe('/no-answer');
+
+    const again = harness.navigateByUrl('/keys');
+    await settle();
+    http.expectOne('/console/session').flush(answer);
+    await again;
     expect(router.url).toBe('/keys');
   });
 
