@@ -16,7 +16,7 @@ export function checkRequest(request: FilledRequest, issues: Issues): void {
     const at = `/bodies/${index}`;
     const earlier = seen.get(body.id);
     if (earlier !== undefined) {
-      const detail = `the id ${JSON.stringify(body.id)} is that of body ${earlier} already; give each body its own`;
+      const detail = `The id ${JSON.stringify(body.id)} is that of body ${earlier} already; give each body its own.`;
       issues.add(`${at}/id`, 'duplicate-id', detail);
     }
     seen.set(body.id, index);
@@ -39,7 +39,7 @@ function checkColumns(
   for (const name of ['y', 'z', 'charge'] as const) {
     const found = columns[name]?.length ?? expected;
     if (found === expected) continue;
-    const detail = `${name} has ${found} values and x has ${expected}; all columns need one length`;
+    const detail = `Column ${name} has ${found} values and x has ${expected}; all columns need one length.`;
     issues.add(`${at}/${name}`, 'unequal-columns', detail);
   }
 }
@@ -50,7 +50,7 @@ function checkPlacement(placement: Placement, at: string, issues: Issues): void 
     issues.add(
       at,
       'conflicting-members',
-      'a placement is either a matrix or translate and rotate, not both',
+      'A placement is either a matrix or translate and rotate, not both.',
     );
     return;
   }
@@ -58,7 +58,7 @@ function checkPlacement(placement: Placement, at: string, issues: Issues): void 
     issues.add(
       `${at}/rotate/axis`,
       'zero-length-axis',
-      `the axis is [${rotate.axis.join(', ')}]; it needs a direction, its length does not matter`,
+      `The axis is [${rotate.axis.join(', ')}]; it needs a direction, its length does not matter.`,
     );
   }
   if (matrix) checkMatrix(matrix, `${at}/matrix`, issues);
@@ -67,16 +67,16 @@ function checkPlacement(placement: Placement, at: string, issues: Issues): void 
 function checkMatrix(matrix: readonly number[], at: string, issues: Issues): void {
   const [a, b, c, d] = matrix.slice(12);
   if (a !== 0 || b !== 0 || c !== 0 || d !== 1) {
-    const detail = `the last row is [${[a, b, c, d].join(', ')}] and must be [0, 0, 0, 1]; matrices are row-major, for column vectors`;
+    const detail = `The last row is [${[a, b, c, d].join(', ')}] and must be [0, 0, 0, 1]; matrices are row-major, for column vectors.`;
     issues.add(at, 'not-a-rotation', detail);
     return;
   }
   const {orthogonality, determinant} = departure(linearPart(matrix));
   if (!(orthogonality <= ORTHOGONALITY)) {
-    const detail = `RᵀR differs from 1 by ${orthogonality.toExponential(2)}, more than 1e-6: the matrix scales or shears; only rotations and translations are taken`;
+    const detail = `RᵀR differs from 1 by ${orthogonality.toExponential(2)}, more than 1e-6: the matrix scales or shears; only rotations and translations are taken.`;
     issues.add(at, 'not-a-rotation', detail);
   } else if (determinant < 0) {
-    const detail = `the determinant is ${determinant.toFixed(6)}: the matrix mirrors; only rotations and translations are taken`;
+    const detail = `The determinant is ${determinant.toFixed(6)}: the matrix mirrors; only rotations and translations are taken.`;
     issues.add(at, 'not-a-rotation', detail);
   }
 }
@@ -93,7 +93,7 @@ const isZero = (vector: readonly number[]): boolean => vector.every(component =>
 function checkGrid(grid: Grid, issues: Issues): void {
   grid.steps.forEach((step, axis) => {
     if (grid.counts[axis] > 1 && isZero(step)) {
-      const detail = `step ${axis} is zero and its count is ${grid.counts[axis]}; only a count of 1 may have a zero step`;
+      const detail = `Step ${axis} is zero and its count is ${grid.counts[axis]}; only a count of 1 may have a zero step.`;
       issues.add(`/targets/grid/steps/${axis}`, 'zero-length-step', detail);
     }
   });
@@ -108,7 +108,7 @@ function checkPath(path: Path, issues: Issues): void {
     issues.add(
       '/targets/path/vertices',
       'zero-length-step',
-      'all vertices are the same point; a path needs a length',
+      'All vertices are the same point; a path needs a length.',
     );
   }
 }

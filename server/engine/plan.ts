@@ -61,7 +61,7 @@ export function plan(
   if (given > limits.requestRows) {
     throw new ServiceError(
       'too-many-rows',
-      `the request has ${given} charges, probes and points; a JSON request takes up to ${limits.requestRows}. Give regular targets as a grid or a path, or split the request`,
+      `The request has ${given} charges, probes and points; a JSON request takes up to ${limits.requestRows}. Give regular targets as a grid or a path, or split the request.`,
     );
   }
 
@@ -129,13 +129,13 @@ function checkSize(work: number, rows: number, limits: EngineLimits): void {
   if (work > limits.synchronousPairs) {
     throw new ServiceError(
       'too-large-for-synchronous',
-      `the call takes ${work} pairs and one call computes up to ${limits.synchronousPairs}; split the targets over several calls`,
+      `The call takes ${work} pairs and one call computes up to ${limits.synchronousPairs}; split the targets over several calls.`,
     );
   }
   if (rows > limits.answerRows) {
     throw new ServiceError(
       'too-large-for-synchronous',
-      `the answer would have ${rows} rows and a JSON answer has up to ${limits.answerRows}; split the targets over several calls`,
+      `The answer would have ${rows} rows and a JSON answer has up to ${limits.answerRows}; split the targets over several calls.`,
     );
   }
 }

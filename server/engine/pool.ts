@@ -81,7 +81,7 @@ export function createEngine({
     },
     async run({call, pairs}, {signal}) {
       const {bytes, timing} = await scheduler.run(call, signal);
-      if (!bytes) throw new ServiceError('time-out', 'the call was stopped');
+      if (!bytes) throw new ServiceError('time-out', 'The call was stopped.');
       return {bytes, pairs, ...timing};
     },
     runInline({call, pairs, route}) {

@@ -90,7 +90,7 @@ export class Scheduler {
         signal.addEventListener('abort', onAbort, {once: true});
         const onStart = (): void => {
           const limit = this.#computeMilliseconds;
-          const detail = `the call did not end within ${limit / 1000} s; split the targets over several calls`;
+          const detail = `The call did not end within ${limit / 1000} s; split the targets over several calls.`;
           timer = setTimeout(() => end(new ServiceError('time-out', detail)), limit);
         };
         const finish = ({bytes, timing}: WrittenAnswer): void => {
@@ -194,7 +194,7 @@ export class Scheduler {
     make: (resolve: (value: T) => void, reject: (reason: unknown) => void) => Call,
   ): Promise<T> {
     if (this.#admitted >= this.#capacity) {
-      const detail = `${this.#capacity} calls are waiting or computing; try again in a moment`;
+      const detail = `${this.#capacity} calls are waiting or computing; try again in a moment.`;
       throw new ServiceError('overloaded', detail, {retryAfter: 1});
     }
     this.#admitted++;

@@ -27,7 +27,7 @@ export function consoleHeaders(isHttps: boolean, nonce: string): Headers {
       'form-action': ["'self'"],
       'frame-ancestors': ["'none'"],
       'require-trusted-types-for': ["'script'"],
-      'trusted-types': ['angular', 'angular#bundler', 'angular#components', 'default'],
+      'trusted-types': ['angular', 'angular#bundler', 'angular#unsafe-bypass', 'default'],
     },
     isHttps,
   );

@@ -105,12 +105,12 @@ function rejectCoincident(
     pointer:
       header.targets === 'points' ? `/targets/points/x/${target}` : `/targets/${header.targets}`,
     code: 'coincident-target' as const,
-    detail: `target ${target} lies on charge ${charge} of body ${JSON.stringify(body)}`,
+    detail: `Target ${target} lies on charge ${charge} of body ${JSON.stringify(body)}.`,
   }));
   if (count === 0) return;
   throw new ServiceError(
     'coincident-target',
-    `${issues[0].detail}; move one of them, or ask for onCoincidence mask or exclude`,
+    `${issues[0].detail} Move one of them, or ask for onCoincidence mask or exclude.`,
     {errors: issues.slice(0, 20), errorCount: count},
   );
 }
@@ -127,7 +127,7 @@ function checkOverflow(header: AnswerHeader, job: FieldJob, reports: readonly Bl
       issues.add(
         pointer,
         'number-overflow',
-        `${name} at target ${i} is larger than a double can hold`,
+        `The value of ${name} at target ${i} is larger than a double can hold.`,
       );
     }
   });

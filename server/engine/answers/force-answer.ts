@@ -56,7 +56,7 @@ export function forceAnswer(
   for (const report of reports) reach = Math.max(reach, report.reach);
   const numbers = numbersIn(values);
   if (!numbers.every(Number.isFinite)) {
-    throw new ServiceError('number-overflow', 'a force is larger than a double can hold');
+    throw new ServiceError('number-overflow', 'A force is larger than a double can hold.');
   }
   const text = JSON.stringify({...values, units: header.units}).slice(0, -1);
   const used = usedCoincidenceDistance(header, reach);
@@ -197,7 +197,7 @@ function refuseOverlaps(
     }
   });
   if (issues.length === 0) return;
-  throw new ServiceError('overlapping-charges', `${issues[0].detail}; move one of them`, {
+  throw new ServiceError('overlapping-charges', `${issues[0].detail} Move one of them.`, {
     errors: issues,
     errorCount,
   });
@@ -205,7 +205,8 @@ function refuseOverlaps(
 
 function issuesOf(header: AnswerHeader, job: ForceJob, i: number, j: number): Issue[] {
   const [one, other] = [nameOf(header, job, i), nameOf(header, job, j)];
-  const detail = `${one.name} and ${other.name} are at one place, so the force between them is not defined`;
+  const [initial, ...rest] = one.name;
+  const detail = `${initial.toUpperCase()}${rest.join('')} and ${other.name} are at one place, so the force between them is not defined.`;
   return [one, other].map(({pointer}) => ({pointer, code: 'overlapping-charges', detail}));
 }
 
