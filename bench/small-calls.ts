@@ -7,8 +7,8 @@ import {startEcho, startService} from './servers.ts';
 // before the reply, log), against an Express that only parses JSON and sends it back?
 const CONNECTIONS = 50;
 const WARM_UP_REQUESTS = 10_000;
-const REQUESTS = 15_000;
-const ROUNDS = 7;
+const REQUESTS = 5000;
+const ROUNDS = 21;
 
 const body = JSON.stringify({
   units: {length: 'mm', charge: 'nC'},

@@ -16,10 +16,14 @@ import {forgetOld} from './ledger/idempotency.ts';
 
 const DRAIN_MILLISECONDS = 30_000;
 const HOUR = 3_600_000;
+/** Lines are written together, and no later than this. */
+const LOG_CHUNK = 4096;
+const LOG_MILLISECONDS = 200;
 
 const config = readConfig(process.env);
 // Written by this process itself, so that the last lines of a crash are not lost with a thread.
-const destination = pino.destination({sync: false});
+const destination = pino.destination({sync: false, minLength: LOG_CHUNK});
+setInterval(() => destination.flush(), LOG_MILLISECONDS).unref();
 const log = pino(
   {level: config.logLevel, base: null, timestamp: pino.stdTimeFunctions.isoTime},
   destination,

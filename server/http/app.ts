@@ -37,7 +37,6 @@ export function createApp(deps: Deps): Express {
   const common = apiHeaders(config.publicUrl.startsWith('https:'));
   app.use((req, res, next) => {
     const ids = requestIds(req);
-    Object.assign(res.locals, ids);
     keepHeaders(res, ids, common);
     logWhenDone(deps, req, res);
     if (req.url.length > config.limits.urlBytes) {

@@ -60,10 +60,13 @@ function withKey(deps: Deps, req: Request, scopes: readonly Scope[], at: Date): 
 }
 
 /** Whether a header was sent more than once; Node keeps the first of some and says nothing. */
-export function hasTwo({rawHeaders}: Request, name: string): boolean {
+export function hasTwo(req: Request, name: string): boolean {
+  const {rawHeaders} = req;
+  // As many names as lines: none stands twice.
+  if (rawHeaders.length === 2 * Object.keys(req.headers).length) return false;
   let count = 0;
   for (let i = 0; i < rawHeaders.length; i += 2) {
-    if (rawHeaders[i].length === name.length && rawHeaders[i].toLowerCase() === name) count++;
+    if (rawHeaders[i].toLowerCase() === name) count++;
   }
   return count > 1;
 }

@@ -52,7 +52,7 @@ export function refuseOtherMethods(app: Express, path: string, methods: readonly
   const allow = [...methods, ...(methods.includes('GET') ? ['HEAD'] : []), 'OPTIONS'].join(', ');
   app.all(path, (req, res) => {
     if (req.method === 'OPTIONS') {
-      res.writeHead(204, {...headersOf(res), Allow: allow}).end();
+      res.writeHead(204, [...headersOf(res), 'Allow', allow]).end();
       return;
     }
     throw new ServiceError(
@@ -182,26 +182,20 @@ function send(
 ): void {
   const status = reply.status ?? 200;
   const bytes = reply.bytes ?? (reply.body ? Buffer.from(JSON.stringify(reply.body)) : null);
-  const headers: Record<string, string | number> = {
-    ...headersOf(res),
-    'Cache-Control': 'no-store',
-    ...reply.headers,
-  };
-  if (bytes) {
-    headers['Content-Type'] = JSON_TYPE;
-    headers['Content-Length'] = bytes.length;
-  }
+  const headers = headersOf(res);
+  headers.push('Cache-Control', 'no-store');
+  for (const name in reply.headers) headers.push(name, reply.headers[name]);
+  if (bytes) headers.push('Content-Type', JSON_TYPE, 'Content-Length', String(bytes.length));
   if (caller.kind === 'key' && burst && reply.left) {
-    Object.assign(
-      headers,
-      rateLimitFields({
-        burst: caller.key.burst,
-        state: burst,
-        month: reply.left,
-        cost: reply.pairs ?? 0,
-        at,
-      }),
-    );
+    const limits = {
+      burst: caller.key.burst,
+      state: burst,
+      month: reply.left,
+      cost: reply.pairs ?? 0,
+      at,
+    };
+    const fields = rateLimitFields(limits);
+    headers.push('RateLimit', fields.RateLimit, 'RateLimit-Policy', fields['RateLimit-Policy']);
   }
   res.writeHead(status, headers);
   // Node joins a text with the headers into one write; bytes take two.

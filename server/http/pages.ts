@@ -11,6 +11,7 @@ import {problemCatalogue} from '../../shared/problem-catalogue.ts';
 import {contractText} from '../contract/document.ts';
 import type {Deps} from '../deps.ts';
 import {ServiceError} from '../errors.ts';
+import {setEach} from './common-headers.ts';
 import {refuseOtherMethods} from './mount.ts';
 import {problemListPage, problemPage} from './problem-pages.ts';
 import {consoleHeaders, documentHeaders, type Headers} from './security-headers.ts';
@@ -72,7 +73,7 @@ function mountReference(app: Express, headers: Headers): void {
 }
 
 function sendPage(res: Response, headers: Headers, page: string | Buffer): void {
-  for (const [name, value] of Object.entries(headers)) res.setHeader(name, value);
+  setEach(res, headers);
   res.setHeader('Cache-Control', 'no-cache');
   res.type('html').end(page);
 }

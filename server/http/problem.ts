@@ -3,7 +3,7 @@ import type {Response} from 'express';
 import type {Problem, ProblemCode} from '../../shared/api.ts';
 import {problemCatalogue} from '../../shared/problem-catalogue.ts';
 import {ServiceError} from '../errors.ts';
-import {headersOf} from './common-headers.ts';
+import {headersOf, setEach} from './common-headers.ts';
 
 const REALM = 'realm="fieldstead"';
 
@@ -74,8 +74,8 @@ export function writeProblem(
 ): void {
   const problem = problemOf(error, publicUrl, requestId);
   const body = Buffer.from(JSON.stringify(problem));
+  setEach(res, headersOf(res));
   res.writeHead(problem.status, {
-    ...headersOf(res),
     ...headersFor(error),
     'Content-Type': 'application/problem+json',
     'Content-Length': body.length,

@@ -53,7 +53,6 @@ function collect(req: Request, decoder: Transform | null, limit: number): Promis
     const endsEarly = (): void => {
       if (!req.complete) stop(new ServiceError('bad-request', 'The body ended before its time.'));
     };
-    req.once('error', endsEarly);
     req.once('close', endsEarly);
   });
 }

@@ -7,10 +7,10 @@ const REQUEST_ID = /^(?!fst_)[A-Za-z0-9._-]{1,64}$/;
 const TRACEPARENT = /^00-(?!0{32})([0-9a-f]{32})-(?!0{16})[0-9a-f]{16}-[0-9a-f]{2}$/;
 
 export interface RequestIds {
-  readonly requestId: string;
-  readonly traceId: string;
+  requestId: string;
+  traceId: string;
   /** For the answer: the caller's trace, a span of our own. */
-  readonly traceparent: string;
+  traceparent: string;
 }
 
 /** Keeps the caller's ids where they are well formed, else makes new ones. */

@@ -1,7 +1,8 @@
 import helmet, {type HelmetOptions} from 'helmet';
 import type {IncomingMessage, ServerResponse} from 'node:http';
 
-export type Headers = Readonly<Record<string, string>>;
+/** Names and values in turn. */
+export type Headers = readonly string[];
 
 type Directives = Record<string, string[]>;
 
@@ -66,10 +67,10 @@ function headersOf(directives: Directives, isHttps: boolean): Headers {
     xPermittedCrossDomainPolicies: false,
     xXssProtection: false,
   };
-  const set: Record<string, string> = {};
+  const set: string[] = [];
   const response = {
     setHeader: (name: string, value: string) => {
-      set[name] = value;
+      set.push(name, value);
     },
     removeHeader: () => undefined,
   };

@@ -18,9 +18,10 @@ import {problemOf} from './problem.ts';
 export function createHttpServer(deps: Deps): Server {
   const {limits} = deps.config;
   const app = createApp(deps);
-  const exchanges = new WeakMap<Duplex, Exchange>();
   const listener = (req: IncomingMessage, res: ServerResponse): void => {
-    exchanges.set(req.socket, {req, res});
+    const socket: WithLast = req.socket;
+    socket[lastRequest] = req;
+    socket[lastResponse] = res;
     req.url = originForm(req.url ?? '');
     app(req, res);
   };
@@ -41,23 +42,27 @@ export function createHttpServer(deps: Deps): Server {
   // Any other expectation may be passed over (RFC 9110 §10.1.1); Node would refuse it with no body.
   server.on('checkExpectation', listener);
   server.on('clientError', (error: NodeJS.ErrnoException, socket: Duplex) => {
-    if (isAnswered(exchanges.get(socket))) socket.destroy();
+    if (isAnswered(socket)) socket.destroy();
     else answerUnreadable(deps, error.code ?? '', socket);
   });
   server.on('connect', (_req, socket) => answerUnreadable(deps, 'CONNECT', socket));
   return server;
 }
 
-/** The last request of a connection and its response. */
-interface Exchange {
-  readonly req: IncomingMessage;
-  readonly res: ServerResponse;
+const lastRequest = Symbol('the last request of a connection');
+const lastResponse = Symbol('its response');
+
+interface WithLast extends Duplex {
+  [lastRequest]?: IncomingMessage;
+  [lastResponse]?: ServerResponse;
 }
 
 /** Whether an answer to what just turned out unreadable would be a second one, or come too early. */
-function isAnswered(last: Exchange | undefined): boolean {
-  if (!last) return false;
-  return last.req.complete ? !last.res.writableEnded : last.res.headersSent;
+function isAnswered(socket: WithLast): boolean {
+  const req = socket[lastRequest];
+  const res = socket[lastResponse];
+  if (!req || !res) return false;
+  return req.complete ? !res.writableEnded : res.headersSent;
 }
 
 /** The path and query of an address; `*` if there are none, which Express would choke on. */

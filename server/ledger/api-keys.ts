@@ -8,6 +8,7 @@ import {ServiceError} from '../errors.ts';
 import type {Spender} from './entries.ts';
 import {createSecret, digestOf, publicIdOf} from './key-form.ts';
 import {periodOf, rfc3339} from './period.ts';
+import * as recent from './recent-keys.ts';
 
 /** A key that was found valid: what the path of a request needs to know of it. */
 export interface ValidKey extends Spender {
@@ -37,12 +38,14 @@ const NO_DIGEST = Buffer.alloc(32);
 
 /** The valid key that `token` is, or null: mistyped, unknown, expired, retired and revoked alike. */
 export function authenticate(driver: Driver, token: string, now: Date): ValidKey | null {
+  const known = recent.find(driver, token, now);
+  if (known) return known;
   const id = publicIdOf(token);
   if (id === null) return null;
   const row = statement<[string], StoredKey>(driver, FIND).get(id);
   const isSame = timingSafeEqual(row?.secret_digest ?? NO_DIGEST, digestOf(token));
   if (!row || !isSame || hasEnded(row, rfc3339(now))) return null;
-  return {
+  const key: ValidKey = {
     id: row.id,
     accountId: row.account_id,
     lineageId: row.lineage_id,
@@ -51,6 +54,13 @@ export function authenticate(driver: Driver, token: string, now: Date): ValidKey
     scopes: JSON.parse(row.scopes) as Scope[],
     burst: row.burst,
   };
+  recent.keep(driver, token, key, endOf(row), now);
+  return key;
+}
+
+/** When a key that is valid now will not be any more [ms since 1970]. */
+function endOf({expires_at, retires_at}: StoredKey): number {
+  return Math.min(...[expires_at, retires_at].map(end => (end ? Date.parse(end) : Infinity)));
 }
 
 /** @param now in the form of the times in the row, or the texts do not compare */
@@ -163,6 +173,7 @@ export function rotate(
         driver,
         `INSERT INTO api_key (${columns.join()}) VALUES (${columns.map(name => `@${name}`).join()})`,
       ).run(row);
+      recent.forget(driver);
       statement(driver, 'UPDATE api_key SET retires_at = ? WHERE id = ?').run(
         rfc3339(new Date(now.getTime() + overlapHours * 3_600_000)),
         old.id,
@@ -185,6 +196,7 @@ export function rotate(
  */
 export function revoke({driver}: Database, accountId: string, id: string, now: Date): void {
   ownKey(driver, accountId, id);
+  recent.forget(driver);
   statement(driver, 'UPDATE api_key SET revoked_at = coalesce(revoked_at, ?) WHERE id = ?').run(
     rfc3339(now),
     id,

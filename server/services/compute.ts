@@ -35,13 +35,12 @@ export async function compute(deps: Deps, call: ComputeCall): Promise<Computed> 
   const prepared = await engine.prepare(call.operation, call.bytes);
   const claim = claimOf(call);
   const isReplay = claim !== null && idempotency.isReplay(driver, claim, call.at);
-  const outcome = isReplay
+  if (!isReplay && prepared.route === 'inline') return computeInline(deps, prepared, call, claim);
+  const {bytes} = isReplay
     ? await recompute(deps, prepared, call)
-    : prepared.route === 'inline'
-      ? await computeInline(deps, prepared, call, claim)
-      : await computeHeld(deps, prepared, call, claim);
+    : await computeHeld(deps, prepared, call, claim);
   const left = entries.left(driver, call.spender, call.at);
-  return {bytes: outcome.bytes, pairs: isReplay ? 0 : prepared.pairs, left, isReplay};
+  return {bytes, pairs: isReplay ? 0 : prepared.pairs, left, isReplay};
 }
 
 /** The engine is deterministic, so a repeated call is computed again instead of being kept. */
@@ -57,10 +56,14 @@ async function computeInline(
   prepared: Prepared,
   call: ComputeCall,
   claim: Claim | null,
-): Promise<Outcome> {
-  const outcome = engine.runInline(prepared);
-  await groupCommit.run(() => spend(driver, entries.charge, prepared.pairs, call, claim));
-  return outcome;
+): Promise<Computed> {
+  const {bytes} = engine.runInline(prepared);
+  const {pairs} = prepared;
+  const left = await groupCommit.run(() => {
+    spend(driver, entries.charge, pairs, call, claim);
+    return entries.left(driver, call.spender, call.at);
+  });
+  return {bytes, pairs, left, isReplay: false};
 }
 
 async function computeHeld(
