@@ -135,22 +135,27 @@ test('large bodies are read by a thread, and refused with the same words and poi
   expect(large.length).toBeGreaterThan(64 * 1024);
 });
 
-test('a call stops within 250 ms once its client has gone, and the threads are free again', async () => {
-  const engine = twoThreads;
-  const request = {bodies: [{charges: charges(20_000)}], targets: grid(120, 120)};
-  const prepared = await engine.prepare('fields', bytesOf(request));
-  const controller = new AbortController();
-  const running = engine.run(prepared, {signal: controller.signal});
-  await new Promise(resolve => setTimeout(resolve, 150));
-  expect(engine.load().queued).toBe(1);
-  const gone = performance.now();
-  controller.abort(new Error('the client has gone'));
-  await expect(running).rejects.toThrow('the client has gone');
-  // The next call needs a thread, so it shows when they are free.
-  await answerOf(engine, 'fields', {bodies: [{charges: charges(600)}], targets: grid(30, 30)});
-  expect(performance.now() - gone).toBeLessThan(250);
-  expect(engine.load().queued).toBe(0);
-});
+// A figure of the service, measured on a machine that others use too: it may be tried again.
+test(
+  'a call stops within 250 ms once its client has gone, and the threads are free again',
+  {retry: 3},
+  async () => {
+    const engine = twoThreads;
+    const request = {bodies: [{charges: charges(20_000)}], targets: grid(120, 120)};
+    const prepared = await engine.prepare('fields', bytesOf(request));
+    const controller = new AbortController();
+    const running = engine.run(prepared, {signal: controller.signal});
+    await new Promise(resolve => setTimeout(resolve, 150));
+    expect(engine.load().queued).toBe(1);
+    const gone = performance.now();
+    controller.abort(new Error('the client has gone'));
+    await expect(running).rejects.toThrow('the client has gone');
+    // The next call needs a thread, so it shows when they are free.
+    await answerOf(engine, 'fields', {bodies: [{charges: charges(600)}], targets: grid(30, 30)});
+    expect(performance.now() - gone).toBeLessThan(250);
+    expect(engine.load().queued).toBe(0);
+  },
+);
 
 test('a call whose client has gone before it starts is not computed', async () => {
   const engine = oneThread;
@@ -233,11 +238,17 @@ test('an estimate is what the call costs, and faults of its request are pointed 
   expect(refusal.errors[0].pointer).toBe('/request/bodies/0/charges/y');
 });
 
-test('threads that were warmed up have read the contract', async () => {
-  await twoThreads.warmUp();
+test('threads that were warmed up have read the contract', {retry: 3}, async () => {
   const body = bytesOf({bodies: [{charges: charges(3000)}], targets: grid(2, 2)});
-  const start = performance.now();
-  await Promise.all([twoThreads.prepare('fields', body), twoThreads.prepare('fields', body)]);
-  // Compiling it takes longer than this, several times.
-  expect(performance.now() - start).toBeLessThan(1000);
+  const timeOf = async (engine: Engine): Promise<number> => {
+    const start = performance.now();
+    await Promise.all([engine.prepare('fields', body), engine.prepare('fields', body)]);
+    return performance.now() - start;
+  };
+  const cold = createEngine({threads: 2});
+  const warm = createEngine({threads: 2});
+  await warm.warmUp();
+  // Compiling the contract takes many times what reading this body does.
+  expect(await timeOf(warm)).toBeLessThan(0.5 * (await timeOf(cold)));
+  await Promise.all([cold.close(), warm.close()]);
 });

@@ -65,7 +65,8 @@ test('of many faults the first twenty are named and all are counted', async () =
   );
 });
 
-test('a million brackets cost neither memory nor time of others', async () => {
+// A figure of the service, measured on a machine that others use too: it may be tried again.
+test('a million brackets cost neither memory nor time of others', {retry: 3}, async () => {
   const brackets = '['.repeat(2e6);
   await service.post('potentials', brackets);
   const before = process.memoryUsage().rss;
@@ -86,14 +87,19 @@ test.each([
   expect(response.status).toBe(200);
 });
 
-test('a compressed body over the limit is refused, however small it was sent', async () => {
-  const bomb = gzipSync(text + ' '.repeat(64 * 1024 * 1024));
-  expect(bomb.length).toBeLessThan(100_000);
-  const before = process.memoryUsage().rss;
-  const response = await postBytes(bomb, {'Content-Encoding': 'gzip'});
-  await expectProblem(service, response, 'body-too-large');
-  expect(process.memoryUsage().rss - before).toBeLessThan(40e6);
-});
+// A figure of the service, measured on a machine that others use too: it may be tried again.
+test(
+  'a compressed body over the limit is refused, however small it was sent',
+  {retry: 3},
+  async () => {
+    const bomb = gzipSync(text + ' '.repeat(64 * 1024 * 1024));
+    expect(bomb.length).toBeLessThan(100_000);
+    const before = process.memoryUsage().rss;
+    const response = await postBytes(bomb, {'Content-Encoding': 'gzip'});
+    await expectProblem(service, response, 'body-too-large');
+    expect(process.memoryUsage().rss - before).toBeLessThan(40e6);
+  },
+);
 
 test('a body that is not in the encoding that it claims is refused', async () => {
   const response = await postBytes(Buffer.from(text), {'Content-Encoding': 'gzip'});

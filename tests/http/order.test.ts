@@ -80,7 +80,7 @@ test('a client that only looks for an answer once it has sent everything sees th
   await expectProblem(service, await answerOn(connection), 'body-too-large');
 });
 
-test('after a refusal the service reads on for a while and then closes', async () => {
+test('after a refusal the service reads on for a while and then closes', {retry: 3}, async () => {
   const connection = openRaw(impatient.baseUrl);
   const start = performance.now();
   connection.send(head({'Content-Length': 9 * MIB}, STRANGER));
