@@ -27,6 +27,8 @@ export default defineConfig({
           testTimeout: 180_000,
           hookTimeout: 180_000,
           fileParallelism: false,
+          // A browser beside the service on two shared cores: one time-out is no finding, two are.
+          retry: 1,
         },
       },
     ],
