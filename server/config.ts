@@ -97,7 +97,7 @@ export function readConfig(env: NodeJS.ProcessEnv, limits: Partial<Limits> = {})
   };
 }
 
-export function isLoopback(host: string): boolean {
+function isLoopback(host: string): boolean {
   return host === 'localhost' || host === '::1' || /^127(\.\d{1,3}){3}$/.test(host);
 }
 

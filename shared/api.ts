@@ -6,7 +6,6 @@ type Schemas = components['schemas'];
 export type OperationId = keyof operations;
 export type ProblemCode = Schemas['ProblemCode'];
 export type Problem = Schemas['Problem'];
-export type ProblemIssue = Schemas['Issue'];
 
 export type Operation = Schemas['Operation'];
 export type ConsoleOperation = Schemas['ConsoleOperation'];

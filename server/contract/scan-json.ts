@@ -8,7 +8,7 @@ const CLOSE_BRACE = 0x7d;
 const OPEN_BRACKET = 0x5b;
 const CLOSE_BRACKET = 0x5d;
 
-export const MAX_DEPTH = 8;
+const MAX_DEPTH = 8;
 
 /** Members seen so far in one open object; null stands for an open array. */
 type Level = Set<string> | null;

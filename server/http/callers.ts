@@ -136,7 +136,7 @@ function refuseOtherSites({config}: Deps, req: Request): void {
   if (isOther) throw new ServiceError('cross-site-request', 'The request came from another site.');
 }
 
-export function sessionTokenOf(req: Request): string | null {
+function sessionTokenOf(req: Request): string | null {
   const cookie = req.headers.cookie ?? '';
   const prefix = `${SESSION_COOKIE}=`;
   const pair = cookie.split('; ').find(one => one.startsWith(prefix));

@@ -70,7 +70,7 @@ function decoderOf(req: Request): Transform | null {
   return decoders[encoding]();
 }
 
-export function hasBody(req: Request): boolean {
+function hasBody(req: Request): boolean {
   return (
     req.headers['transfer-encoding'] !== undefined || Number(req.headers['content-length'] ?? 0) > 0
   );

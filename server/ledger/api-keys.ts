@@ -76,7 +76,7 @@ function hasEnded(
 }
 
 const DEFAULT_LIFE_DAYS = 365;
-export const DEFAULT_BURST = 100;
+const DEFAULT_BURST = 100;
 
 export interface Maker {
   readonly accountId: string;
