@@ -344,7 +344,7 @@ export interface components {
          * @description The closed list of problems; each is explained at /problems/{code}
          * @enum {string}
          */
-        readonly ProblemCode: "malformed-json" | "invalid-utf8" | "duplicate-member" | "nested-too-deep" | "empty-body" | "bad-request" | "malformed-authorization" | "misplaced-credential" | "invalid-query" | "invalid-header" | "key-required" | "invalid-key" | "sign-in-required" | "sign-in-failed" | "insufficient-scope" | "insufficient-role" | "cross-site-request" | "insecure-origin" | "not-found" | "method-not-allowed" | "not-acceptable" | "request-timeout" | "call-in-flight" | "key-state" | "link-spent" | "body-too-large" | "url-too-long" | "unsupported-media-type" | "unsupported-encoding" | "wrong-type" | "missing-member" | "unknown-member" | "out-of-range" | "invalid-value" | "number-overflow" | "unknown-unit" | "unequal-columns" | "duplicate-id" | "zero-length-axis" | "not-a-rotation" | "conflicting-members" | "zero-length-step" | "coincident-target" | "overlapping-charges" | "too-many-rows" | "too-large-for-synchronous" | "exceeds-limit" | "idempotency-mismatch" | "rate-limited" | "allowance-exhausted" | "headers-too-large" | "internal" | "overloaded" | "time-out" | "not-ready";
+        readonly ProblemCode: "malformed-json" | "invalid-utf8" | "duplicate-member" | "nested-too-deep" | "empty-body" | "bad-request" | "malformed-authorization" | "misplaced-credential" | "invalid-query" | "invalid-header" | "key-required" | "invalid-key" | "sign-in-required" | "sign-in-failed" | "insufficient-scope" | "insufficient-role" | "cross-site-request" | "insecure-origin" | "not-found" | "method-not-allowed" | "not-acceptable" | "request-timeout" | "call-in-flight" | "key-state" | "link-spent" | "body-too-large" | "url-too-long" | "unsupported-media-type" | "unsupported-encoding" | "wrong-type" | "missing-member" | "unknown-member" | "out-of-range" | "invalid-value" | "number-overflow" | "unknown-unit" | "unequal-columns" | "duplicate-id" | "zero-length-axis" | "not-a-rotation" | "conflicting-members" | "zero-length-step" | "coincident-target" | "overlapping-charges" | "too-many-rows" | "too-large-for-synchronous" | "tolerance-not-reached" | "exceeds-limit" | "idempotency-mismatch" | "rate-limited" | "allowance-exhausted" | "headers-too-large" | "internal" | "overloaded" | "time-out" | "not-ready";
         /** @description Problem details (RFC 9457) */
         readonly Problem: {
             /**
@@ -558,14 +558,28 @@ export interface components {
             readonly grid?: components["schemas"]["Grid"];
             readonly path?: components["schemas"]["Path"];
         };
-        /** @description What to say of the accuracy */
+        /** @description How accurate to be, and what to say of it */
         readonly AccuracyRequest: {
             /**
-             * @description Whether to answer a bound with every value; the true value is within it
+             * @description Whether to answer a bound with every value; the true value is within it. Bounds are of direct sums, whatever the tolerance
+             * @default false
+             */
+            readonly bounds?: boolean;
+            readonly tolerance?: components["schemas"]["Tolerance"];
+        };
+        /** @description What to say of the accuracy */
+        readonly ForceAccuracyRequest: {
+            /**
+             * @description Whether to answer a bound with every force; the true value is within it
              * @default false
              */
             readonly bounds?: boolean;
         };
+        /**
+         * Format: double
+         * @description [1] relative error of potential and of field that will do, in the sense of least squares over all targets that are not masked; with one, large sums are made by the multipole method where that is quicker. Without one, sums are direct
+         */
+        readonly Tolerance: number;
         /**
          * @description What happens where a target lies on a charge: null, leave that charge out, or refuse the request
          * @enum {string}
@@ -613,7 +627,7 @@ export interface components {
             readonly include?: readonly ("charges" | "internalEnergy" | "interactions")[];
             /** @description Probe charges; they feel all bodies and act on none */
             readonly probes?: components["schemas"]["ChargeColumns"];
-            readonly accuracy?: components["schemas"]["AccuracyRequest"];
+            readonly accuracy?: components["schemas"]["ForceAccuracyRequest"];
         };
         /** @description Bodies whose moments are wanted */
         readonly MomentRequest: {
@@ -665,7 +679,7 @@ export interface components {
          * @description How sums are evaluated
          * @enum {string}
          */
-        readonly Method: "direct";
+        readonly Method: "direct" | "multipole";
         /** @description A vector */
         readonly Xyz: {
             /**
@@ -795,6 +809,41 @@ export interface components {
              * @description [length unit] the largest distance that counted as coincident
              */
             readonly coincidenceDistance: number;
+            readonly tolerance?: components["schemas"]["Tolerance"];
+            readonly estimated?: components["schemas"]["EstimatedError"];
+            /**
+             * Format: double
+             * @description [1] where rounding alone may exceed the tolerance: the relative error, in the sense of the tolerance, that direct sums are within
+             */
+            readonly reached?: number;
+        };
+        /** @description What the error of the multipole method was at targets summed directly as well; expected, not a bound */
+        readonly EstimatedError: {
+            /**
+             * Format: double
+             * @description [1] relative error of the potential, in the sense of the tolerance
+             */
+            readonly potential: number;
+            /**
+             * Format: double
+             * @description [1] relative error of the field, in the sense of the tolerance
+             */
+            readonly field?: number;
+            /**
+             * Format: double
+             * @description [1] largest error of the potential at a sampled target over the root mean square of the potential at all targets
+             */
+            readonly largestPotential: number;
+            /**
+             * Format: double
+             * @description [1] largest error of the field at a sampled target over the root mean square of the field at all targets
+             */
+            readonly largestField?: number;
+            /**
+             * Format: int64
+             * @description [targets] how many were summed directly as well
+             */
+            readonly samples: number;
         };
         /** @description What the call cost */
         readonly Cost: {
@@ -809,6 +858,20 @@ export interface components {
              * @description [ms] from the start of the computation to its end
              */
             readonly computedMilliseconds: number;
+            readonly preparation?: components["schemas"]["Preparation"];
+        };
+        /** @description What was reused of earlier calls with the same charges; absent where a call is too small to keep anything */
+        readonly Preparation: {
+            /**
+             * Format: int64
+             * @description [prepared forms] packed columns and trees that were kept from an earlier call
+             */
+            readonly hits: number;
+            /**
+             * Format: int64
+             * @description [prepared forms] packed columns and trees that this call had to make
+             */
+            readonly misses: number;
         };
         /** @description What computed the answer */
         readonly EngineFacts: {

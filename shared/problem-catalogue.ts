@@ -295,8 +295,14 @@ export const problemCatalogue: Readonly<Record<ProblemCode, ProblemKind>> = {
   'too-large-for-synchronous': kind(
     422,
     'The computation is too large for a direct answer',
-    'A call that answers at once may cost 500,000,000 pairs at most. Larger work belongs in a background job (Prefer: respond-async on the same operation, where the service offers jobs).',
+    'A call that answers at once may cost 2,000,000,000 pairs at most. Larger work belongs in a background job (Prefer: respond-async on the same operation, where the service offers jobs).',
     'Split the targets over several calls, or send the work as a job.',
+  ),
+  'tolerance-not-reached': kind(
+    422,
+    'The tolerance could not be reached',
+    'The values are so small beside the terms they are sums of that the multipole method could not reach the tolerance, and a direct sum would be too large for one call. Nothing was charged.',
+    'Ask for a larger tolerance, or split the targets so that each call can be summed directly.',
   ),
   'exceeds-limit': kind(
     422,
