@@ -71,6 +71,7 @@ export default tseslint.config(
       'coverage/',
       'shared/api.gen.ts',
       'server/http/public/',
+      'server/engine/kernels/assembly/',
     ],
   },
   {

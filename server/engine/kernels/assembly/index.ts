@@ -1,0 +1,2 @@
+export * from './direct';
+export * from './multipole';

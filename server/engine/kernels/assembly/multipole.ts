@@ -1,0 +1,2 @@
+// The kernels of the multipole method.
+export {};
