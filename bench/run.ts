@@ -5,7 +5,14 @@ import {isBuildStale} from '../server/cli/build-stamp.ts';
 
 // npm run bench            all questions
 // npm run bench -- direct  those whose name has "direct" in it
-const NOT_QUESTIONS = new Set(['run.ts', 'compare.ts', 'servers.ts']);
+const NOT_QUESTIONS = new Set([
+  'run.ts',
+  'compare.ts',
+  'servers.ts',
+  'interleave.ts',
+  'random-charges.ts',
+  'yardsticks.ts',
+]);
 const wanted = process.argv.slice(2);
 
 if (isBuildStale())

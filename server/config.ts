@@ -27,6 +27,7 @@ export interface Limits {
   readonly requestRows: number;
   readonly queuedCalls: number;
   readonly computeMilliseconds: number;
+  readonly heapBytes: number;
 }
 
 export interface Config {
@@ -65,11 +66,12 @@ export const defaultLimits: Limits = {
   inlinePairs: 5e4,
   inlineRows: 500,
   inlineBytes: 64 * KIB,
-  synchronousPairs: 5e8,
+  synchronousPairs: 2e9,
   answerRows: 2e5,
   requestRows: 1e5,
   queuedCalls: 200,
-  computeMilliseconds: 10_000,
+  computeMilliseconds: 30_000,
+  heapBytes: 2048 * MIB,
 };
 
 /**

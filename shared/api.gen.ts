@@ -1788,7 +1788,7 @@ export interface operations {
                      *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
-                     *         "version": "0.1.0",
+                     *         "version": "0.2.0",
                      *         "constants": "CODATA 2022"
                      *       },
                      *       "inputDigest": "sha-256:05dfaed96f99c7eefab3f67147dbd610cd3a1c1be89b56904bc0fb7c5b4841e1",
@@ -1960,7 +1960,7 @@ export interface operations {
                      *         ],
                      *         "fieldX": [
                      *           null,
-                     *           30.854957589351457
+                     *           30.854957589351454
                      *         ],
                      *         "fieldY": [
                      *           null,
@@ -1972,7 +1972,7 @@ export interface operations {
                      *         ],
                      *         "fieldMagnitude": [
                      *           null,
-                     *           100.76467072460748
+                     *           100.76467072460747
                      *         ],
                      *         "potentialBound": [
                      *           null,
@@ -1980,7 +1980,7 @@ export interface operations {
                      *         ],
                      *         "fieldBound": [
                      *           null,
-                     *           9.20688971701476e-14
+                     *           9.110852802143781e-14
                      *         ]
                      *       },
                      *       "count": 2,
@@ -2008,11 +2008,11 @@ export interface operations {
                      *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
-                     *         "version": "0.1.0",
+                     *         "version": "0.2.0",
                      *         "constants": "CODATA 2022"
                      *       },
                      *       "inputDigest": "sha-256:59cc0a5e3ffad62f81d70beebfba50debcd93e2f3d6c174aaca07b506febc086",
-                     *       "resultDigest": "sha-256:5952a824e9b884b715d78ff9a840678b38d4948e9e5747179106b86f5e53490d",
+                     *       "resultDigest": "sha-256:5a90b2956d85ba501b00af18fa01d98202c94e391295bcede3e6e3953aa2855c",
                      *       "notices": [
                      *         {
                      *           "code": "idealised",
@@ -2195,7 +2195,7 @@ export interface operations {
                      *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
-                     *         "version": "0.1.0",
+                     *         "version": "0.2.0",
                      *         "constants": "CODATA 2022"
                      *       },
                      *       "inputDigest": "sha-256:91cd431c35e4e997c6e8a6153ec8f9ff0310bd9f0468a759ef2ac6f24e14dcf7",
@@ -2354,7 +2354,7 @@ export interface operations {
                      *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
-                     *         "version": "0.1.0",
+                     *         "version": "0.2.0",
                      *         "constants": "CODATA 2022"
                      *       },
                      *       "inputDigest": "sha-256:1dc096e964b1fff54eff6d7e60701eebb5235cc4bea659c9f496278a4110edd0",
@@ -3255,7 +3255,7 @@ export interface operations {
                      *         "computedMilliseconds": 0.05
                      *       },
                      *       "engine": {
-                     *         "version": "0.1.0",
+                     *         "version": "0.2.0",
                      *         "constants": "CODATA 2022"
                      *       },
                      *       "inputDigest": "sha-256:1dc096e964b1fff54eff6d7e60701eebb5235cc4bea659c9f496278a4110edd0",

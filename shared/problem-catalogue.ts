@@ -344,13 +344,13 @@ export const problemCatalogue: Readonly<Record<ProblemCode, ProblemKind>> = {
   overloaded: kind(
     503,
     'The service is at its limit',
-    'The queue for computations is full. Nothing was charged.',
+    'The queue or the memory for computations is full. Nothing was charged.',
     'Wait for the seconds in Retry-After and repeat the call.',
   ),
   'time-out': kind(
     503,
     'The computation took too long',
-    'A call that answers at once may compute for 10 s. Nothing was charged.',
+    'A call that answers at once may compute for 30 s. Nothing was charged.',
     'Split the targets over several calls.',
   ),
   'not-ready': kind(

@@ -5,17 +5,26 @@ import type {AnswerHeader, Timing} from './answers/header.ts';
 import {momentAnswer} from './answers/moment-answer.ts';
 import {computeFieldBlock} from './field-block.ts';
 import type {BlockReport, Job, Stop} from './jobs.ts';
+import {ownWorkplace, type Workplace} from './workplace.ts';
 
 /** How many blocks a job has. */
 export const blockCount = (job: Job): number => job.blocks.length - 1;
 
-/** Computes one block of a job into its `out`: pure but for that, and the same on any thread. */
-export function computeBlock(job: Job, block: number, stop: Stop): BlockReport {
+/**
+ * Computes one block of a job into its `out`: pure but for that, and the same on any thread and at
+ * any workplace.
+ */
+export function computeBlock(
+  job: Job,
+  block: number,
+  stop: Stop,
+  workplace: Workplace = ownWorkplace,
+): BlockReport {
   switch (job.kind) {
     case 'field':
-      return computeFieldBlock(job, block, stop);
+      return computeFieldBlock(job, block, stop, workplace);
     case 'force':
-      return computeForceBlock(job, block, stop);
+      return computeForceBlock(job, block, stop, workplace);
     case 'moment':
       throw new RangeError('moments have no blocks');
   }

@@ -2,94 +2,138 @@ import {unitOf} from '../../shared/units.ts';
 import {UNIT_ROUNDOFF} from './exact.ts';
 import {COINCIDENCES_LISTED, ISSUES_LISTED} from './limits.ts';
 import {DirectSum, RESULT} from './methods/direct-sum.ts';
-import {
-  PAIRS_BETWEEN_STOPS,
-  type BlockReport,
-  type FieldColumn,
-  type FieldJob,
-  type Stop,
-} from './jobs.ts';
-import {outputScale, scaled, scaledBound} from './output-scale.ts';
-import {POSITION_STRIDE, targetPosition} from './targets.ts';
+import type {BlockReport, FieldColumn, FieldJob, Stop} from './jobs.ts';
+import {outputScale, scaled, scaledBound, type OutputScale} from './output-scale.ts';
+import {targetPositions} from './targets.ts';
+import type {Workplace} from './workplace.ts';
 
 /** Rounding of a length of three squares, their sum and a root, relative. */
 const MAGNITUDE_ERROR = 3 * UNIT_ROUNDOFF;
 
 /** Computes one block of a field job into `job.out`: columns, each as long as there are targets. */
-export function computeFieldBlock(job: FieldJob, block: number, stop: Stop): BlockReport {
-  const {charges, symbols, relativePermittivity, columns, count, out} = job;
+export function computeFieldBlock(
+  job: FieldJob,
+  block: number,
+  stop: Stop,
+  workplace: Workplace,
+): BlockReport {
+  const {charges, columns} = job;
   const from = job.blocks[block];
   const to = job.blocks[block + 1];
-  const charge = unitOf('charge', symbols.charge);
-  const method = new DirectSum(charges, {
+  const options = {
     kind: job.sum,
     bounds: job.bounds,
     coincidenceDistance: job.coincidenceDistance,
     isExcluding: job.onCoincidence === 'exclude',
-    chargeRoundings: charge.roundings,
-  });
-  const write = columns.map(column =>
-    columnWriter(column, method.result, relativePermittivity, job),
-  );
-  const target = new Float64Array(POSITION_STRIDE);
+    chargeRoundings: unitOf('charge', job.symbols.charge).roundings,
+  };
+  const sum = new DirectSum(charges, options, to - from, workplace);
+  const scales = scalesOf(job);
   const ranges = [0, charges.count];
+  const most = job.onCoincidence === 'reject' ? ISSUES_LISTED : COINCIDENCES_LISTED;
   const listed: number[] = [];
   let coincidentCount = 0;
-  let reach = job.coincidenceDistance;
-  const everyTargets = Math.max(1, Math.floor(PAIRS_BETWEEN_STOPS / charges.count));
-  const most = job.onCoincidence === 'reject' ? ISSUES_LISTED : COINCIDENCES_LISTED;
 
-  for (let i = from; i < to; i++) {
-    if ((i - from) % everyTargets === 0 && stop()) break;
-    targetPosition(job.targets, i, target);
-    reach = Math.max(reach, method.reach(target[6]));
-    const hasSum = method.at(target, ranges);
-    if (method.coincident.length > 0) {
-      coincidentCount += method.coincident.length;
-      for (const j of method.coincident) if (listed.length < 2 * most) listed.push(i, j);
+  for (let start = from; start < to; start += sum.capacity) {
+    if (stop()) break;
+    const count = Math.min(sum.capacity, to - start);
+    targetPositions(job.targets, start, count, sum.positions);
+    sum.compute(0, count, ranges);
+    for (const [i, coincident] of sum.coincident) {
+      coincidentCount += coincident.length;
+      for (const j of coincident) if (listed.length < 2 * most) listed.push(start + i, j);
     }
-    for (let c = 0; c < columns.length; c++) out[c * count + i] = hasSum ? write[c]() : NaN;
+    for (let c = 0; c < columns.length; c++) {
+      const at = c * job.count + start;
+      const column = job.out.subarray(at, at + count);
+      writeColumn(columns[c], sum, scales, column);
+      for (const i of sum.withoutSum) column[i] = NaN;
+    }
   }
-  return {coincident: listed, coincidentCount, reach};
+  return {coincident: listed, coincidentCount, reach: sum.reach};
 }
 
-/** Reads the value of one column from the result of a sum. */
-function columnWriter(
-  column: FieldColumn,
-  result: Float64Array,
-  relativePermittivity: number,
-  {symbols}: FieldJob,
-): () => number {
+type Scales = Readonly<Record<'potential' | 'field' | 'gradient', OutputScale>>;
+
+function scalesOf({symbols, relativePermittivity}: FieldJob): Scales {
   const charge = unitOf('charge', symbols.charge);
   const scaleOf = (dimension: 'potential' | 'field' | 'fieldGradient') =>
     outputScale(dimension, symbols[dimension], relativePermittivity, charge);
-  const potential = scaleOf('potential');
-  const field = scaleOf('field');
-  const gradient = scaleOf('fieldGradient');
-  const length = (): number =>
-    vectorLength(result[RESULT.e], result[RESULT.e + 1], result[RESULT.e + 2]);
+  return {
+    potential: scaleOf('potential'),
+    field: scaleOf('field'),
+    gradient: scaleOf('fieldGradient'),
+  };
+}
+
+/** Writes one column of the answer from the results of a batch. */
+function writeColumn(
+  column: FieldColumn,
+  sum: DirectSum,
+  {potential, field, gradient}: Scales,
+  out: Float64Array,
+): void {
   switch (column) {
     case 'potential':
-      return () => scaled(potential, result[RESULT.v]);
+      writeScaled(potential, sum.result(RESULT.v), out);
+      return;
     case 'fieldX':
-      return () => scaled(field, result[RESULT.e]);
+      writeScaled(field, sum.result(RESULT.e), out);
+      return;
     case 'fieldY':
-      return () => scaled(field, result[RESULT.e + 1]);
+      writeScaled(field, sum.result(RESULT.e + 1), out);
+      return;
     case 'fieldZ':
-      return () => scaled(field, result[RESULT.e + 2]);
-    case 'fieldMagnitude':
-      return () => scaled(field, length());
-    case 'potentialBound':
-      return () => scaledBound(potential, Math.abs(result[RESULT.v]), result[RESULT.vBound]);
-    case 'fieldBound':
-      return () => scaledBound(field, length(), result[RESULT.eBound], MAGNITUDE_ERROR);
-    case 'fieldGradientBound':
-      return () => scaledBound(gradient, frobenius(result), result[RESULT.gBound]);
+      writeScaled(field, sum.result(RESULT.e + 2), out);
+      return;
+    case 'fieldMagnitude': {
+      fieldLengths(sum, out);
+      writeScaled(field, out, out);
+      return;
+    }
+    case 'potentialBound': {
+      const v = sum.result(RESULT.v);
+      for (let i = 0; i < out.length; i++) out[i] = Math.abs(v[i]);
+      writeBounds(potential, sum.result(RESULT.vBound), 0, out);
+      return;
+    }
+    case 'fieldBound': {
+      fieldLengths(sum, out);
+      writeBounds(field, sum.result(RESULT.eBound), MAGNITUDE_ERROR, out);
+      return;
+    }
+    case 'fieldGradientBound': {
+      frobeniusNorms(sum, out);
+      writeBounds(gradient, sum.result(RESULT.gBound), 0, out);
+      return;
+    }
     default: {
       const place = RESULT.g + GRADIENT_ORDER.indexOf(column.slice(-2));
-      return () => scaled(gradient, result[place]);
+      writeScaled(gradient, sum.result(place), out);
+      return;
     }
   }
+}
+
+function writeScaled(scale: OutputScale, sums: Float64Array, out: Float64Array): void {
+  for (let i = 0; i < out.length; i++) out[i] = scaled(scale, sums[i]);
+}
+
+/** Replaces the sizes of values in `out` by the bounds of those values. */
+function writeBounds(
+  scale: OutputScale,
+  bounds: Float64Array,
+  extra: number,
+  out: Float64Array,
+): void {
+  for (let i = 0; i < out.length; i++) out[i] = scaledBound(scale, out[i], bounds[i], extra);
+}
+
+function fieldLengths(sum: DirectSum, out: Float64Array): void {
+  const x = sum.result(RESULT.e);
+  const y = sum.result(RESULT.e + 1);
+  const z = sum.result(RESULT.e + 2);
+  for (let i = 0; i < out.length; i++) out[i] = vectorLength(x[i], y[i], z[i]);
 }
 
 const GRADIENT_ORDER = ['XX', 'XY', 'XZ', 'YY', 'YZ', 'ZZ'];
@@ -104,10 +148,11 @@ export function vectorLength(x: number, y: number, z: number): number {
   return scale * Math.sqrt((x / scale) ** 2 + (y / scale) ** 2 + (z / scale) ** 2);
 }
 
-/** Frobenius norm of the gradient in a result. */
-function frobenius(result: Float64Array): number {
-  const [xx, xy, xz, yy, yz, zz] = result.subarray(RESULT.g, RESULT.g + 6);
-  const diagonal = vectorLength(xx, yy, zz);
-  const rest = vectorLength(xy, xz, yz);
-  return vectorLength(diagonal, Math.SQRT2 * rest, 0);
+function frobeniusNorms(sum: DirectSum, out: Float64Array): void {
+  const [xx, xy, xz, yy, yz, zz] = GRADIENT_ORDER.map((_, n) => sum.result(RESULT.g + n));
+  for (let i = 0; i < out.length; i++) {
+    const diagonal = vectorLength(xx[i], yy[i], zz[i]);
+    const rest = vectorLength(xy[i], xz[i], yz[i]);
+    out[i] = vectorLength(diagonal, Math.SQRT2 * rest, 0);
+  }
 }

@@ -1,7 +1,7 @@
 import type {Grid} from '../../shared/api.ts';
 import type {Unit} from '../../shared/units.ts';
-import {productError, sumError, UNIT_ROUNDOFF} from './exact.ts';
-import {convert, norm, position, type Position} from './positions.ts';
+import {productError, sumError, UNIT_ROUNDOFF, upperHalf} from './exact.ts';
+import {convert, norm, position, type Position, type PositionColumns} from './positions.ts';
 
 /**
  * A regular grid in metres: the first step varies fastest, values sit on the grid points.
@@ -34,50 +34,80 @@ export function packGrid(grid: Grid, unit: Unit): PackedGrid {
 
 export const gridCount = (counts: readonly number[]): number => counts[0] * counts[1] * counts[2];
 
-let remainder = 0;
-
-/** start + n · step, adding what is rounded away to `remainder`. */
-function advance(start: number, n: number, step: number, stepRemainder: number): number {
-  if (n === 0) return start;
-  const product = n * step;
-  const sum = start + product;
-  remainder += productError(n, step, product) + sumError(start, product, sum) + n * stepRemainder;
-  return sum;
-}
-
-/** Where the node at `index` lies. */
-export function gridNode(grid: PackedGrid, index: number, out: Position): void {
+/** Writes where `count` nodes from `from` on lie to the beginning of `out`: row by row. */
+export function gridNodes(
+  grid: PackedGrid,
+  from: number,
+  count: number,
+  out: PositionColumns,
+): void {
   const {origin, counts} = grid;
   const [a, b, c] = grid.steps;
-  const i = index % counts[0];
-  const rest = (index - i) / counts[0];
-  const j = rest % counts[1];
-  const k = (rest - j) / counts[1];
+  const error = 2 * (grid.roundings + 4) * UNIT_ROUNDOFF;
+  const [originNorm, aNorm, bNorm, cNorm] = [origin, a, b, c].map(p => norm(p.x, p.y, p.z));
+  for (let at = 0; at < count;) {
+    const i = (from + at) % counts[0];
+    const rest = (from + at - i) / counts[0];
+    const j = rest % counts[1];
+    const k = (rest - j) / counts[1];
+    const end = Math.min(count, at + counts[0] - i);
+    const row = {at, end, i, j, k};
+    rowAlong('x', 'xRemainder', grid, row, out);
+    rowAlong('y', 'yRemainder', grid, row, out);
+    rowAlong('z', 'zRemainder', grid, row, out);
+    const {xRemainder, yRemainder, zRemainder, radius} = out;
+    for (let n = at; n < end; n++) {
+      const isExact = xRemainder[n] === 0 && yRemainder[n] === 0 && zRemainder[n] === 0;
+      // On every axis: the conversions, one product a step and three sums of what is at most this.
+      const reach = originNorm + (i + n - at) * aNorm + j * bNorm + k * cNorm;
+      radius[n] = isExact ? 0 : error * reach;
+    }
+    at = end;
+  }
+}
 
-  remainder = origin.xRemainder;
-  const x = advance(origin.x, i, a.x, a.xRemainder);
-  const xy = advance(x, j, b.x, b.xRemainder);
-  out.x = advance(xy, k, c.x, c.xRemainder);
-  out.xRemainder = remainder;
+/** Nodes of one row: where they are written, and the indices of the first. */
+interface Row {
+  readonly at: number;
+  readonly end: number;
+  readonly i: number;
+  readonly j: number;
+  readonly k: number;
+}
 
-  remainder = origin.yRemainder;
-  const y = advance(origin.y, i, a.y, a.yRemainder);
-  const yy = advance(y, j, b.y, b.yRemainder);
-  out.y = advance(yy, k, c.y, c.yRemainder);
-  out.yRemainder = remainder;
-
-  remainder = origin.zRemainder;
-  const z = advance(origin.z, i, a.z, a.zRemainder);
-  const zy = advance(z, j, b.z, b.zRemainder);
-  out.z = advance(zy, k, c.z, c.zRemainder);
-  out.zRemainder = remainder;
-
-  const isExact = out.xRemainder === 0 && out.yRemainder === 0 && out.zRemainder === 0;
-  // On every axis: the conversions, one product a step and three sums of what is at most `reach`.
-  const reach =
-    norm(origin.x, origin.y, origin.z) +
-    i * norm(a.x, a.y, a.z) +
-    j * norm(b.x, b.y, b.z) +
-    k * norm(c.x, c.y, c.z);
-  out.radius = isExact ? 0 : 2 * (grid.roundings + 4) * UNIT_ROUNDOFF * reach;
+function rowAlong(
+  axis: 'x' | 'y' | 'z',
+  lost: 'xRemainder' | 'yRemainder' | 'zRemainder',
+  {origin, steps: [a, b, c]}: PackedGrid,
+  {at, end, i, j, k}: Row,
+  out: PositionColumns,
+): void {
+  const values = out[axis];
+  const remainders = out[lost];
+  const start = origin[axis];
+  const startLost = origin[lost];
+  const step = a[axis];
+  const stepLost = a[lost];
+  const stepUpper = upperHalf(step);
+  const stepLower = step - stepUpper;
+  const second = j * b[axis];
+  const secondLost = productError(j, b[axis], second);
+  const secondStepLost = j * b[lost];
+  const third = k * c[axis];
+  const thirdLost = productError(k, c[axis], third);
+  const thirdStepLost = k * c[lost];
+  for (let n = at; n < end; n++) {
+    const times = i + n - at;
+    const first = times * step;
+    // The product with half a step is exact, since `times` has no more than 26 bits.
+    const firstLost = times * stepUpper - first + times * stepLower;
+    const one = start + first;
+    const two = one + second;
+    const three = two + third;
+    let remainder = startLost + (firstLost + sumError(start, first, one) + times * stepLost);
+    remainder += secondLost + sumError(one, second, two) + secondStepLost;
+    remainder += thirdLost + sumError(two, third, three) + thirdStepLost;
+    values[n] = three;
+    remainders[n] = remainder;
+  }
 }

@@ -12,6 +12,8 @@ interface Blocks {
   readonly blocks: readonly number[];
   /** The results; how they lie in it is the affair of the kind of job. */
   readonly out: Float64Array;
+  /** [bytes] where `out` begins in the heap; undefined elsewhere */
+  readonly outAddress: number | undefined;
 }
 
 /** Potential and field at targets. `out` holds columns in the order of the answer. */
@@ -115,6 +117,3 @@ export interface BlockReport {
 
 /** Whether to stop; asked every few milliseconds. */
 export type Stop = () => boolean;
-
-/** Pairs between two looks at `Stop`: about 5 ms. */
-export const PAIRS_BETWEEN_STOPS = 1e6;

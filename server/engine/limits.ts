@@ -11,16 +11,19 @@ export interface EngineLimits {
   readonly requestRows: number;
   /** [ms] from the first block of a call to its end. */
   readonly computeMilliseconds: number;
+  /** [bytes] of address space that all calls are computed in; they cost nothing until used. */
+  readonly heapBytes: number;
 }
 
 export const defaultLimits: EngineLimits = {
   inlinePairs: 5e4,
   inlineRows: 500,
   inlineBytes: 64 * 1024,
-  synchronousPairs: 5e8,
+  synchronousPairs: 2e9,
   answerRows: 2e5,
   requestRows: 1e5,
-  computeMilliseconds: 10_000,
+  computeMilliseconds: 30_000,
+  heapBytes: 2 ** 31,
 };
 
 /** No call costs less. */

@@ -43,6 +43,7 @@ export function packMoments(plan: Plan, memory: Memory): PackedCall {
       about: request.about ?? [0, 0, 0],
       blocks: [0],
       out: new Float64Array(0),
+      outAddress: undefined,
     },
   };
 }

@@ -3,7 +3,7 @@ import {answerHeader, type AnswerHeader} from './answers/header.ts';
 import {totalOf} from './compensated-sum.ts';
 import {symbolOf, type FilledRequest} from './filled-request.ts';
 import {FIELD_COLUMNS, FORCE_STRIDE, type FieldColumn, type Job} from './jobs.ts';
-import {ownMemory, sharedMemory, type Memory} from './memory.ts';
+import type {Memory} from './memory.ts';
 import type {BoundKind, SumKind} from './methods/direct-sum.ts';
 import {packAssembly, packProbes, type PackedAssembly} from './pack-charges.ts';
 import {packMoments} from './pack-moments.ts';
@@ -21,11 +21,10 @@ export interface PackedCall {
 const PAIRS_WITH_ERRORS = 5e7;
 
 /** Evaluations that make a block: some 20 ms, so that calls share the threads and stop soon. */
-const PER_BLOCK: Record<BoundKind, number> = {none: 1.6e6, errors: 2.4e5, magnitudes: 6e5};
+const PER_BLOCK: Record<BoundKind, number> = {none: 8e6, errors: 1e6, magnitudes: 4e6};
 const TARGETS_PER_BLOCK = 16_384;
 
-export function pack(plan: Plan): PackedCall {
-  const memory = plan.route === 'inline' ? ownMemory : sharedMemory;
+export function pack(plan: Plan, memory: Memory): PackedCall {
   switch (plan.operation) {
     case 'potentials':
     case 'fields':
@@ -41,6 +40,11 @@ export function pack(plan: Plan): PackedCall {
 export function boundKind(hasBounds: boolean, evaluations: number): BoundKind {
   if (!hasBounds) return 'none';
   return evaluations <= PAIRS_WITH_ERRORS ? 'errors' : 'magnitudes';
+}
+
+function results(length: number, memory: Memory): Pick<Job, 'out' | 'outAddress'> {
+  const out = memory(length);
+  return {out, outAddress: memory.addressOf(out)};
 }
 
 /** How many targets make a block: from the size of the call, never from the number of threads. */
@@ -84,7 +88,7 @@ function packFields(plan: Plan, memory: Memory): PackedCall {
       coincidenceDistance: length.toSI(request.coincidenceDistance ?? 0),
       onCoincidence: request.onCoincidence ?? 'mask',
       blocks,
-      out: memory(columns.length * count),
+      ...results(columns.length * count, memory),
     },
   };
 }
@@ -162,7 +166,7 @@ function packForces(plan: Plan, memory: Memory): PackedCall {
       ...momentArms(request, assembly),
       totalCharges: request.bodies.map(body => totalOf(body.charges.charge)),
       blocks,
-      out: memory(FORCE_STRIDE * targets),
+      ...results(FORCE_STRIDE * targets, memory),
     },
   };
 }

@@ -1,6 +1,8 @@
 import type {Estimate, Operation} from '../../shared/api.ts';
 import {ServiceError} from '../errors.ts';
 import {estimateOf} from './estimate.ts';
+import {createHeap, Heap} from './heap.ts';
+import {loadKernels, type KernelModule} from './kernels/load.ts';
 import {defaultLimits, type EngineLimits} from './limits.ts';
 import {planBody} from './prepare.ts';
 import {runWhole} from './run-call.ts';
@@ -13,6 +15,8 @@ export interface EngineOptions {
   readonly limits?: Partial<EngineLimits>;
   /** Calls in the threads or waiting for them; more are refused as `overloaded`. */
   readonly maxQueue?: number;
+  /** Compiled kernels, if not those of the build; null for the plain ones. */
+  readonly kernels?: KernelModule | null;
 }
 
 /** A call that has been read, checked and counted. */
@@ -52,6 +56,8 @@ export interface Engine {
   warmUp(): Promise<void>;
   /** Calls in the threads or waiting for them, and how many there may be. */
   load(): {readonly queued: number; readonly capacity: number};
+  /** [bytes] of the heap that calls hold at the moment */
+  memory(): {readonly allocated: number; readonly capacity: number};
   close(): Promise<void>;
 }
 
@@ -61,10 +67,12 @@ export function createEngine({
   threads: count,
   limits: given,
   maxQueue = 200,
+  kernels = loadKernels(),
 }: EngineOptions): Engine {
   const limits: EngineLimits = {...defaultLimits, ...given};
-  const threads = new Threads(count);
-  const scheduler = new Scheduler(threads, maxQueue, limits.computeMilliseconds);
+  const heap = new Heap(createHeap(limits.heapBytes));
+  const threads = new Threads(count, heap, kernels ?? undefined);
+  const scheduler = new Scheduler(threads, heap, maxQueue, limits.computeMilliseconds);
 
   const preparedOf = (call: PreparedCall): Prepared => {
     const {operation, pairs, rows, route} = call.plan;
@@ -101,6 +109,7 @@ export function createEngine({
       await Promise.all(Array.from({length: count}, () => threads.do({type: 'warm'})));
     },
     load: () => scheduler.load,
+    memory: () => ({allocated: heap.allocated, capacity: heap.capacity}),
     close: () => threads.close(),
   };
 }

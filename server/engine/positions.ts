@@ -1,5 +1,6 @@
 import type {Unit} from '../../shared/units.ts';
 import {productError, quotientError, sumError, UNIT_ROUNDOFF} from './exact.ts';
+import {POSITION_COLUMNS} from './kernels/layout.ts';
 import type {Rotation} from './rotation.ts';
 
 /** A position [m]: doubles, what they lack to the exact one, and the radius that covers it twice. */
@@ -22,6 +23,37 @@ export const position = (): Position => ({
   zRemainder: 0,
   radius: 0,
 });
+
+/** Positions as columns, the members of Position in their order. */
+export interface PositionColumns {
+  readonly x: Float64Array;
+  readonly y: Float64Array;
+  readonly z: Float64Array;
+  readonly xRemainder: Float64Array;
+  readonly yRemainder: Float64Array;
+  readonly zRemainder: Float64Array;
+  readonly radius: Float64Array;
+  readonly all: readonly Float64Array[];
+}
+
+/** The first POSITION_COLUMNS columns of `values`, each `stride` long. */
+export function positionColumns(values: Float64Array, stride: number): PositionColumns {
+  const all = Array.from({length: POSITION_COLUMNS}, (_, n) =>
+    values.subarray(n * stride, (n + 1) * stride),
+  );
+  const [x, y, z, xRemainder, yRemainder, zRemainder, radius] = all;
+  return {x, y, z, xRemainder, yRemainder, zRemainder, radius, all};
+}
+
+export function storePosition(columns: PositionColumns, index: number, p: Position): void {
+  columns.x[index] = p.x;
+  columns.y[index] = p.y;
+  columns.z[index] = p.z;
+  columns.xRemainder[index] = p.xRemainder;
+  columns.yRemainder[index] = p.yRemainder;
+  columns.zRemainder[index] = p.zRemainder;
+  columns.radius[index] = p.radius;
+}
 
 /** What `toSI` rounded away: the exact rule's value minus unit.toSI(value). */
 export function conversionRemainder(unit: Unit, value: number): number {

@@ -1,13 +1,15 @@
 import {ServiceError} from '../errors.ts';
 import {blockCount} from './evaluate.ts';
+import type {Heap} from './heap.ts';
 import type {BlockReport} from './jobs.ts';
+import {Lease} from './lease.ts';
 import type {PackedCall} from './pack.ts';
 import type {PreparedCall, Task, WrittenAnswer} from './tasks.ts';
 import type {Threads} from './threads.ts';
 
 /** Work up to here is one task: hops between threads cost more than what sharing it would save. */
-const WHOLE_WORK = 1.6e6;
-const WHOLE_WORK_WITH_BOUNDS = 2.4e5;
+const WHOLE_WORK = 4e6;
+const WHOLE_WORK_WITH_BOUNDS = 5e5;
 
 /** A call on its way through the threads. */
 interface Call {
@@ -24,15 +26,18 @@ interface Call {
  */
 export class Scheduler {
   readonly #threads: Threads;
+  readonly #heap: Heap;
   readonly #capacity: number;
   readonly #computeMilliseconds: number;
   /** Whose turn it is stands first. */
   #calls: Call[] = [];
   #out = 0;
   #admitted = 0;
+  #lastTag = 0;
 
-  constructor(threads: Threads, capacity: number, computeMilliseconds: number) {
+  constructor(threads: Threads, heap: Heap, capacity: number, computeMilliseconds: number) {
     this.#threads = threads;
+    this.#heap = heap;
     this.#capacity = capacity;
     this.#computeMilliseconds = computeMilliseconds;
   }
@@ -78,6 +83,8 @@ export class Scheduler {
     signal.throwIfAborted();
     const flag = new Int32Array(new SharedArrayBuffer(Int32Array.BYTES_PER_ELEMENT));
     const queuedAt = performance.now();
+    const tag = this.#newTag();
+    const lease = new Lease(() => this.#heap.release(tag));
     let timer: NodeJS.Timeout | undefined;
     let onAbort: (() => void) | undefined;
     try {
@@ -98,17 +105,20 @@ export class Scheduler {
         };
         const hasBounds = plan.request.accuracy?.bounds === true;
         return plan.work <= (hasBounds ? WHOLE_WORK_WITH_BOUNDS : WHOLE_WORK)
-          ? this.#wholeCall({plan, call}, flag, queuedAt, onStart, finish, end)
-          : this.#blockCall({plan, call}, flag, queuedAt, onStart, finish, end);
+          ? this.#wholeCall({plan, call}, tag, lease, flag, queuedAt, onStart, finish, end)
+          : this.#blockCall({plan, call}, tag, lease, flag, queuedAt, onStart, finish, end);
       });
     } finally {
       clearTimeout(timer);
+      lease.end();
       if (onAbort) signal.removeEventListener('abort', onAbort);
     }
   }
 
   #wholeCall(
     {plan, call}: PreparedCall,
+    tag: number,
+    lease: Lease,
     flag: Int32Array,
     queuedAt: number,
     onStart: () => void,
@@ -123,13 +133,11 @@ export class Scheduler {
         if (isOut) return undefined;
         isOut = true;
         const queuedMilliseconds = performance.now() - queuedAt;
-        return async () => {
-          try {
-            finish(await this.#threads.do({type: 'whole', plan, call, queuedMilliseconds, flag}));
-          } catch (error) {
-            fail(error);
-          }
-        };
+        return guarded(lease, fail, async () => {
+          finish(
+            await this.#threads.do({type: 'whole', plan, call, queuedMilliseconds, tag, flag}),
+          );
+        });
       },
     };
     return own;
@@ -137,24 +145,19 @@ export class Scheduler {
 
   #blockCall(
     {plan, call}: PreparedCall,
+    tag: number,
+    lease: Lease,
     flag: Int32Array,
     queuedAt: number,
     onStart: () => void,
     finish: (answer: WrittenAnswer) => void,
     fail: (reason: unknown) => void,
   ): Call {
-    let packed: PackedCall | undefined = call;
+    let packed: PackedCall | undefined;
     let isPacking = false;
     let nextBlock = 0;
     let done = 0;
     const reports: BlockReport[] = [];
-    const guarded = (step: () => Promise<void>) => async (): Promise<void> => {
-      try {
-        await step();
-      } catch (error) {
-        fail(error);
-      }
-    };
     const own: Call = {
       startedAt: undefined,
       onStart,
@@ -162,16 +165,18 @@ export class Scheduler {
         if (!packed) {
           if (isPacking) return undefined;
           isPacking = true;
-          return guarded(async () => {
-            packed = await this.#threads.do({type: 'pack', plan});
+          return guarded(lease, fail, async () => {
+            packed = await this.#threads.do({type: 'pack', plan, call, tag});
           });
         }
         const {header, job} = packed;
         const count = blockCount(job);
         if (nextBlock < count) {
           const block = nextBlock++;
-          return guarded(async () => {
-            reports[block] = await this.#threads.do({type: 'block', job, block, flag});
+          return guarded(lease, fail, async () => {
+            reports[block] = await this.#withScratch(scratch =>
+              this.#threads.do({type: 'block', job, block, tag: scratch, flag}),
+            );
             done++;
           });
         }
@@ -182,12 +187,27 @@ export class Scheduler {
           queuedMilliseconds: started - queuedAt,
           computedMilliseconds: performance.now() - started,
         };
-        return guarded(async () => {
+        return guarded(lease, fail, async () => {
           finish(await this.#threads.do({type: 'answer', header, job, reports, timing, flag}));
         });
       },
     };
     return own;
+  }
+
+  /** Lends a task memory of its own until it is back. */
+  async #withScratch<T>(task: (tag: number) => Promise<T>): Promise<T> {
+    const tag = this.#newTag();
+    try {
+      return await task(tag);
+    } finally {
+      this.#heap.release(tag);
+    }
+  }
+
+  #newTag(): number {
+    this.#lastTag = (this.#lastTag % 0x7fff_ffff) + 1;
+    return this.#lastTag;
   }
 
   async #admit<T>(
@@ -240,3 +260,14 @@ export class Scheduler {
     return undefined;
   }
 }
+
+/** A step of a call: its memory is kept until the step is over, and what it throws ends the call. */
+const guarded =
+  (lease: Lease, fail: (reason: unknown) => void, step: () => Promise<void>) =>
+  async (): Promise<void> => {
+    try {
+      await lease.during(step);
+    } catch (error) {
+      fail(error);
+    }
+  };

@@ -1,17 +1,24 @@
 import type {Targets} from '../../shared/api.ts';
 import type {Unit} from '../../shared/units.ts';
-import {gridNode, packGrid, type PackedGrid} from './grid.ts';
+import {gridNodes, packGrid, type PackedGrid} from './grid.ts';
+import {POSITION_COLUMNS} from './kernels/layout.ts';
 import type {Memory} from './memory.ts';
 import {packPath, pathSample, type PackedPath} from './path.ts';
-import {convert, position, type Position} from './positions.ts';
+import {
+  convert,
+  position,
+  positionColumns,
+  storePosition,
+  type PositionColumns,
+} from './positions.ts';
 
-/** Numbers of one position in a flat array: x, y, z, their remainders, radius [m]. */
-export const POSITION_STRIDE = 7;
-
-/** Points [m], flat. */
+/** Points [m]: columns in the order of PositionColumns, one after the other. */
 export interface PackedPoints {
   readonly kind: 'points';
+  readonly count: number;
   readonly values: Float64Array;
+  /** [bytes] where `values` begins in the heap; undefined elsewhere */
+  readonly address: number | undefined;
 }
 
 export type PackedTargets = PackedPoints | PackedGrid | PackedPath;
@@ -21,36 +28,41 @@ export function packTargets(targets: Targets, unit: Unit, memory: Memory): Packe
   if (targets.path) return packPath(targets.path, unit);
   const points = targets.points;
   if (!points) throw new RangeError('expected points, a grid or a path');
-  const values = memory(POSITION_STRIDE * points.x.length);
+  const count = points.x.length;
+  const values = memory(POSITION_COLUMNS * count);
+  const columns = positionColumns(values, count);
   const at = position();
-  for (let i = 0; i < points.x.length; i++) {
+  for (let i = 0; i < count; i++) {
     convert(unit, points.x[i], points.y[i], points.z[i], at);
-    storePosition(values, i, at);
+    storePosition(columns, i, at);
   }
-  return {kind: 'points', values};
+  return {kind: 'points', count, values, address: memory.addressOf(values)};
 }
 
-export function storePosition(values: Float64Array, index: number, p: Position): void {
-  const start = POSITION_STRIDE * index;
-  values[start] = p.x;
-  values[start + 1] = p.y;
-  values[start + 2] = p.z;
-  values[start + 3] = p.xRemainder;
-  values[start + 4] = p.yRemainder;
-  values[start + 5] = p.zRemainder;
-  values[start + 6] = p.radius;
-}
-
-const scratch = position();
-
-/** Writes the position of target `index` to the first POSITION_STRIDE places of `out`. */
-export function targetPosition(targets: PackedTargets, index: number, out: Float64Array): void {
-  if (targets.kind === 'points') {
-    const start = POSITION_STRIDE * index;
-    for (let n = 0; n < POSITION_STRIDE; n++) out[n] = targets.values[start + n];
-    return;
+/** Writes the positions of `count` targets from `from` on to the beginning of `out`. */
+export function targetPositions(
+  targets: PackedTargets,
+  from: number,
+  count: number,
+  out: PositionColumns,
+): void {
+  switch (targets.kind) {
+    case 'points': {
+      for (let n = 0; n < POSITION_COLUMNS; n++) {
+        const start = n * targets.count + from;
+        out.all[n].set(targets.values.subarray(start, start + count));
+      }
+      return;
+    }
+    case 'grid':
+      gridNodes(targets, from, count, out);
+      return;
+    case 'path': {
+      const at = position();
+      for (let i = 0; i < count; i++) {
+        pathSample(targets, from + i, at);
+        storePosition(out, i, at);
+      }
+    }
   }
-  if (targets.kind === 'grid') gridNode(targets, index, scratch);
-  else pathSample(targets, index, scratch);
-  storePosition(out, 0, scratch);
 }

@@ -6,7 +6,10 @@ import type {EngineLimits} from './limits.ts';
 import type {PackedCall} from './pack.ts';
 import type {Plan} from './plan.ts';
 
-/** What a thread is asked to do; plain data. `flag` is shared: not 0 means stop. */
+/**
+ * What a thread is asked to do; plain data. `flag` is shared: not 0 means stop. Memory is taken from
+ * the heap under `tag`; who made the task gives it back.
+ */
 export type Task =
   | {
       readonly type: 'prepare';
@@ -15,11 +18,18 @@ export type Task =
       readonly limits: EngineLimits;
     }
   | {readonly type: 'warm'}
-  | {readonly type: 'pack'; readonly plan: Plan}
+  | {
+      /** Into the heap; `call` is there already if a thread has read the body. */
+      readonly type: 'pack';
+      readonly plan: Plan;
+      readonly call: PackedCall | undefined;
+      readonly tag: number;
+    }
   | {
       readonly type: 'block';
       readonly job: Job;
       readonly block: number;
+      readonly tag: number;
       readonly flag: Int32Array;
     }
   | {
@@ -36,6 +46,7 @@ export type Task =
       readonly plan: Plan;
       readonly call: PackedCall | undefined;
       readonly queuedMilliseconds: number;
+      readonly tag: number;
       readonly flag: Int32Array;
     };
 
@@ -68,6 +79,7 @@ export interface Refusal {
   readonly message: string;
   readonly errors: readonly Issue[];
   readonly errorCount: number;
+  readonly retryAfter: number | undefined;
 }
 
 export type TaskResponse =

@@ -1,8 +1,11 @@
 import {createRequire} from 'node:module';
 import {fileURLToPath, pathToFileURL} from 'node:url';
+import {threadId} from 'node:worker_threads';
 import {Piscina} from 'piscina';
 
 import {ServiceError} from '../errors.ts';
+import type {Heap, SharedHeap} from './heap.ts';
+import type {KernelModule} from './kernels/load.ts';
 import type {Task, TaskResponse, TaskResults} from './tasks.ts';
 
 /** [MiB] of heap a thread may have before it is ended; results lie outside, in shared memory. */
@@ -10,15 +13,26 @@ const HEAP = 512;
 
 type ResultOf<T extends Task> = TaskResults[T['type']];
 
+/** What every thread is given at its start. */
+export interface ThreadData {
+  readonly heap: SharedHeap;
+  /** Undefined where only the plain ones are to be had. */
+  readonly kernels: KernelModule | undefined;
+}
+
 /** Threads that do tasks, one each at a time. */
 export class Threads {
   readonly count: number;
   readonly #pool: Piscina<Task, TaskResponse>;
+  readonly #heap: Heap;
 
-  constructor(count: number) {
+  constructor(count: number, heap: Heap, kernels: KernelModule | undefined) {
     this.count = count;
+    this.#heap = heap;
+    const workerData: ThreadData = {heap: heap.shared, kernels};
     this.#pool = new Piscina({
       ...workerFile(),
+      workerData,
       minThreads: count,
       maxThreads: count,
       idleTimeout: Infinity,
@@ -30,10 +44,20 @@ export class Threads {
 
   /** @throws ServiceError if the request is refused */
   async do<T extends Task>(task: T, moved: readonly ArrayBuffer[] = []): Promise<ResultOf<T>> {
-    const response = await this.#pool.run(task, {transferList: [...moved]});
+    const response = await this.#run(task, moved);
     if ('result' in response) return response.result as ResultOf<T>;
-    const {code, message, errors, errorCount} = response.refusal;
-    throw new ServiceError(code, message, {errors, errorCount});
+    const {code, message, ...options} = response.refusal;
+    throw new ServiceError(code, message, options);
+  }
+
+  async #run(task: Task, moved: readonly ArrayBuffer[]): Promise<TaskResponse> {
+    try {
+      return await this.#pool.run(task, {transferList: [...moved]});
+    } catch (error) {
+      // A bug, or the thread is no more.
+      this.#heap.recover([threadId, ...this.#pool.threads.map(thread => thread.threadId)]);
+      throw error;
+    }
   }
 
   async close(): Promise<void> {

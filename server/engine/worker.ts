@@ -1,11 +1,29 @@
+import {workerData} from 'node:worker_threads';
 import {move, transferableSymbol, valueSymbol} from 'piscina';
 
 import {ServiceError} from '../errors.ts';
 import {computeBlock, writeAnswer} from './evaluate.ts';
+import {Heap} from './heap.ts';
+import {housedCall} from './housed-call.ts';
 import type {Stop} from './jobs.ts';
+import {compiledKernels} from './kernels/compiled-kernels.ts';
+import {instantiate} from './kernels/load.ts';
+import {ownMemory, sharedMemory} from './memory.ts';
 import {pack} from './pack.ts';
 import {runWhole} from './run-call.ts';
 import type {Task, TaskResponse, TaskResults, WrittenAnswer} from './tasks.ts';
+import type {ThreadData} from './threads.ts';
+import type {Workplace} from './workplace.ts';
+
+const {heap: sharedHeap, kernels} = workerData as ThreadData;
+const heap = new Heap(sharedHeap);
+const kernelExports = kernels && instantiate(kernels, heap.memory);
+const compiled = kernelExports && compiledKernels(kernelExports);
+
+const workplaceOf = (tag: number): Workplace => ({
+  memory: heap.memoryOf(tag),
+  ...(compiled && {compiled}),
+});
 
 /** Does one task of a thread. Refusals are results; anything else thrown is a bug. */
 export default async function work(task: Task): Promise<TaskResponse> {
@@ -15,8 +33,8 @@ export default async function work(task: Task): Promise<TaskResponse> {
   } catch (error) {
     // A refusal of the request; bugs go up.
     if (!(error instanceof ServiceError)) throw error;
-    const {code, message, errors, errorCount} = error;
-    return {refusal: {code, message, errors, errorCount}};
+    const {code, message, errors, errorCount, retryAfter} = error;
+    return {refusal: {code, message, errors, errorCount, retryAfter}};
   }
 }
 
@@ -27,7 +45,9 @@ async function resultOf(task: Task): Promise<TaskResults[Task['type']]> {
       const {planBody} = await import('./prepare.ts');
       const plan = planBody(task.operation, task.bytes, task.limits);
       if (task.operation === 'estimates') return {plan: withoutRequest(plan)};
-      return {plan: withoutRequest(plan), call: pack(plan)};
+      // In the heap only once it runs, which not all calls do.
+      const memory = plan.route === 'inline' ? ownMemory : sharedMemory;
+      return {plan: withoutRequest(plan), call: pack(plan, memory)};
     }
     case 'warm': {
       const {compileChecks} = await import('./prepare.ts');
@@ -35,15 +55,23 @@ async function resultOf(task: Task): Promise<TaskResults[Task['type']]> {
       return undefined;
     }
     case 'pack':
-      return pack(task.plan);
+      return task.call
+        ? housedCall(task.call, heap.memoryOf(task.tag))
+        : pack(task.plan, heap.memoryOf(task.tag));
     case 'block':
-      return computeBlock(task.job, task.block, stopOf(task.flag));
+      return computeBlock(task.job, task.block, stopOf(task.flag), workplaceOf(task.tag));
     case 'answer': {
       const {header, job, reports, timing} = task;
       return {bytes: writeAnswer(header, job, reports, timing, stopOf(task.flag)), timing};
     }
     case 'whole':
-      return runWhole(task.plan, task.call, task.queuedMilliseconds, stopOf(task.flag));
+      return runWhole(
+        task.plan,
+        task.call,
+        task.queuedMilliseconds,
+        stopOf(task.flag),
+        workplaceOf(task.tag),
+      );
   }
 }
 

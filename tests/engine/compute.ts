@@ -10,6 +10,7 @@ import type {
 import {blockCount, computeBlock, writeAnswer} from '../../server/engine/evaluate.ts';
 import type {FilledRequest} from '../../server/engine/filled-request.ts';
 import type {Job} from '../../server/engine/jobs.ts';
+import {ownMemory} from '../../server/engine/memory.ts';
 import {pack} from '../../server/engine/pack.ts';
 import {plan} from '../../server/engine/plan.ts';
 
@@ -45,7 +46,7 @@ export function compute<O extends keyof Requests>(
   change: (job: Job) => Job = job => job,
 ): {filled: FilledRequest; answer: Answers[O]} {
   const planned = plan(operation, request);
-  const packed = pack(planned);
+  const packed = pack(planned, ownMemory);
   const job = change(packed.job);
   const reports = Array.from({length: blockCount(job)}, (_, b) => computeBlock(job, b, NEVER));
   const timing = {queuedMilliseconds: 0, computedMilliseconds: 0};

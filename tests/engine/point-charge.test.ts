@@ -2,7 +2,9 @@ import {expect, test} from 'vitest';
 
 import {ownMemory} from '../../server/engine/memory.ts';
 import {DirectSum, RESULT, type SumKind} from '../../server/engine/methods/direct-sum.ts';
+import {position, storePosition} from '../../server/engine/positions.ts';
 import {chargeColumns, type ChargeColumns} from '../../server/engine/sources/charge-columns.ts';
+import {ownWorkplace} from '../../server/engine/workplace.ts';
 import {record, recordsLike, toleranceOf} from '../reference/records.ts';
 import {randomNumbers} from './random.ts';
 
@@ -23,15 +25,18 @@ function pack(given: readonly Charge[]): ChargeColumns {
 }
 
 function sumsAt(charges: ChargeColumns, kind: SumKind, [x, y, z]: readonly number[]): Float64Array {
-  const sum = new DirectSum(charges, {
+  const options = {
     kind,
     bounds: 'none',
     coincidenceDistance: 0,
     isExcluding: false,
     chargeRoundings: 0,
-  });
-  expect(sum.at(Float64Array.of(x, y, z, 0, 0, 0, 0), [0, charges.count])).toBe(true);
-  return sum.result;
+  } as const;
+  const sum = new DirectSum(charges, options, 1, ownWorkplace);
+  storePosition(sum.positions, 0, {...position(), x, y, z});
+  sum.compute(0, 1, [0, charges.count]);
+  expect(sum.withoutSum).toEqual([]);
+  return Float64Array.from({length: RESULT.length}, (_, place) => sum.result(place)[0]);
 }
 
 // Physical dipoles and linear quadrupoles: records.json names their sources; values are in k_e.

@@ -1,9 +1,15 @@
 import {expect, test} from 'vitest';
 
 import {unitOf} from '../../shared/units.ts';
-import {gridNode, packGrid} from '../../server/engine/grid.ts';
+import {gridNodes, packGrid, type PackedGrid} from '../../server/engine/grid.ts';
 import {packPath, pathSample} from '../../server/engine/path.ts';
-import {position, type Position} from '../../server/engine/positions.ts';
+import {POSITION_COLUMNS} from '../../server/engine/kernels/layout.ts';
+import {
+  position,
+  positionColumns,
+  type Position,
+  type PositionColumns,
+} from '../../server/engine/positions.ts';
 import {fixed, over, root, times, toNumber} from './fixed-point.ts';
 import {toSI} from './oracle.ts';
 import {randomNumbers} from './random.ts';
@@ -29,6 +35,39 @@ function distances(found: Position, exact: readonly bigint[]): {corrected: numbe
   };
 }
 
+/** One node of a grid, by itself. */
+function nodeOf(grid: PackedGrid, index: number, at: Position): void {
+  const {x, y, z, xRemainder, yRemainder, zRemainder, radius} = nodesOf(grid, index, 1);
+  [at.x, at.y, at.z, at.radius] = [x[0], y[0], z[0], radius[0]];
+  [at.xRemainder, at.yRemainder, at.zRemainder] = [xRemainder[0], yRemainder[0], zRemainder[0]];
+}
+
+function nodesOf(grid: PackedGrid, from: number, count: number): PositionColumns {
+  const columns = positionColumns(new Float64Array(POSITION_COLUMNS * count), count);
+  gridNodes(grid, from, count, columns);
+  return columns;
+}
+
+test('grid points are the same whichever of them are asked for together', () => {
+  const random = randomNumbers(6);
+  const vector = (): Vector => [random() - 0.5, random() - 0.5, random() - 0.5];
+  const grid = packGrid(
+    {origin: vector(), steps: [vector(), vector(), vector()], counts: [7, 5, 3]},
+    unitOf('length', 'in'),
+  );
+  const all = nodesOf(grid, 0, 105).all.map(column => [...column]);
+  expect(new Set(all[0]).size).toBeGreaterThan(50);
+  for (const [from, count] of [
+    [0, 1],
+    [3, 60],
+    [34, 71],
+    [104, 1],
+  ]) {
+    const some = nodesOf(grid, from, count).all.map(column => [...column]);
+    expect(some).toEqual(all.map(column => column.slice(from, from + count)));
+  }
+});
+
 test('grid points: the first step varies fastest', () => {
   const grid = packGrid(
     {
@@ -44,7 +83,7 @@ test('grid points: the first step varies fastest', () => {
   );
   const at = position();
   const nodes = Array.from({length: 12}, (_, index) => {
-    gridNode(grid, index, at);
+    nodeOf(grid, index, at);
     return [at.x, at.y, at.z];
   });
   expect(nodes[0]).toEqual([1, 2, 3]);
@@ -67,7 +106,7 @@ test('grid points know what rounding took away from them', () => {
     const packed = packGrid({...grid, counts}, unitOf('length', symbol));
     const at = position();
     for (let index = 0; index < 105; index++) {
-      gridNode(packed, index, at);
+      nodeOf(packed, index, at);
       const [i, j, k] = [index % 7, Math.floor(index / 7) % 5, Math.floor(index / 35)];
       const exact = [0, 1, 2].map(axis => {
         const along = (n: number): bigint => toSI(grid.steps[n][axis], symbol);

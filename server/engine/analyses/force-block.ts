@@ -1,15 +1,10 @@
 import {unitOf} from '../../../shared/units.ts';
 import {ISSUES_LISTED} from '../limits.ts';
-import {
-  FORCE_STRIDE,
-  PAIRS_BETWEEN_STOPS,
-  type BlockReport,
-  type ForceJob,
-  type Stop,
-} from '../jobs.ts';
+import {FORCE_STRIDE, type BlockReport, type ForceJob, type Stop} from '../jobs.ts';
 import {DirectSum, RESULT} from '../methods/direct-sum.ts';
-import {POSITION_STRIDE} from '../targets.ts';
+import type {PositionColumns} from '../positions.ts';
 import type {ChargeColumns} from '../sources/charge-columns.ts';
+import type {Workplace} from '../workplace.ts';
 
 /**
  * Computes one block of a force job: the field and potential of all other bodies at each charge of
@@ -17,7 +12,12 @@ import type {ChargeColumns} from '../sources/charge-columns.ts';
  *
  * Charges on top of each other are reported as coincident, unless one of the two is zero.
  */
-export function computeForceBlock(job: ForceJob, block: number, stop: Stop): BlockReport {
+export function computeForceBlock(
+  job: ForceJob,
+  block: number,
+  stop: Stop,
+  workplace: Workplace,
+): BlockReport {
   const {charges, probes, starts} = job;
   const from = job.blocks[block];
   const to = job.blocks[block + 1];
@@ -26,52 +26,73 @@ export function computeForceBlock(job: ForceJob, block: number, stop: Stop): Blo
   const feeling = isProbe && probes ? probes : charges;
   const offset = isProbe ? charges.count : 0;
   const body = isProbe ? bodies : bodyAt(starts, from);
-  const sum = new DirectSum(charges, {
+  const options = {
     kind: 'field',
     bounds: job.bounds,
     coincidenceDistance: 0,
     isExcluding: true,
     chargeRoundings: unitOf('charge', job.symbols.charge).roundings,
-  });
+  } as const;
+  const sum = new DirectSum(charges, options, to - from, workplace);
   const interactions = new Float64Array(job.hasInteractions && !isProbe ? 4 * bodies : 0);
   const others = rangesOfOthers(starts, body, interactions.length > 0);
-  const target = new Float64Array(POSITION_STRIDE);
-  const listed: number[] = [];
-  let coincidentCount = 0;
-  let reach = 0;
-  const note = (i: number, charge: number): void => {
-    if (charge === 0) return;
-    coincidentCount += sum.coincident.length;
-    for (const j of sum.coincident) if (listed.length < 2 * ISSUES_LISTED) listed.push(i, j);
-  };
-  const everyTargets = Math.max(1, Math.floor(PAIRS_BETWEEN_STOPS / charges.count));
+  const found = new Coincidences();
 
-  for (let i = from; i < to; i++) {
-    if ((i - from) % everyTargets === 0 && stop()) break;
-    const own = i - offset;
-    chargePosition(feeling, own, target);
-    reach = Math.max(reach, sum.reach(target[6]));
-    const charge = feeling.q[own];
-    const place = FORCE_STRIDE * i;
-    job.out.fill(0, place, place + FORCE_STRIDE);
+  for (let start = from; start < to; start += sum.capacity) {
+    if (stop()) break;
+    const count = Math.min(sum.capacity, to - start);
+    const own = start - offset;
+    const q = feeling.q.subarray(own, own + count);
+    chargePositions(feeling, own, count, sum.positions);
+    job.out.fill(0, FORCE_STRIDE * start, FORCE_STRIDE * (start + count));
     for (const {body: acting, ranges} of others) {
-      sum.at(target, ranges);
-      note(i, charge);
-      addTo(job.out, place, sum.result);
+      sum.compute(0, count, ranges);
+      found.note(sum, start, q);
+      addTo(job.out, start, count, sum);
       // Every two bodies are answered once, the earlier one acting.
-      if (interactions.length > 0 && acting < body) {
-        const at = 4 * acting;
-        for (let n = 0; n < 3; n++) interactions[at + n] += charge * sum.result[RESULT.e + n];
-        interactions[at + 3] += charge * sum.result[RESULT.v];
-      }
+      if (interactions.length > 0 && acting < body) addInteraction(interactions, acting, q, sum);
     }
     if (job.hasInternalEnergy && !isProbe) {
-      sum.at(target, [starts[body], i, i + 1, starts[body + 1]]);
-      note(i, charge);
-      job.out[place + 4] = sum.result[RESULT.v];
+      for (let i = 0; i < count; i++) {
+        const j = start + i;
+        sum.compute(i, i + 1, [starts[body], j, j + 1, starts[body + 1]]);
+        found.note(sum, start, q);
+        job.out[FORCE_STRIDE * j + 4] = sum.result(RESULT.v)[i];
+      }
     }
   }
-  return {coincident: listed, coincidentCount, reach, interactions};
+  const {listed: coincident, count: coincidentCount} = found;
+  return {coincident, coincidentCount, reach: sum.reach, interactions};
+}
+
+/** Collects coincident pairs: lists the first, counts all. */
+class Coincidences {
+  readonly listed: number[] = [];
+  count = 0;
+
+  /** @param q of the charges that feel, from `start` on; one of zero overlaps with nothing */
+  note(sum: DirectSum, start: number, q: Float64Array): void {
+    for (const [i, coincident] of sum.coincident) {
+      if (q[i] === 0) continue;
+      this.count += coincident.length;
+      for (const j of coincident) {
+        if (this.listed.length < 2 * ISSUES_LISTED) this.listed.push(start + i, j);
+      }
+    }
+  }
+}
+
+function addInteraction(
+  interactions: Float64Array,
+  acting: number,
+  q: Float64Array,
+  sum: DirectSum,
+): void {
+  const at = 4 * acting;
+  [RESULT.e, RESULT.e + 1, RESULT.e + 2, RESULT.v].forEach((place, n) => {
+    const result = sum.result(place);
+    for (let i = 0; i < q.length; i++) interactions[at + n] += q[i] * result[i];
+  });
 }
 
 interface Acting {
@@ -94,20 +115,28 @@ function rangesOfOthers(starts: readonly number[], body: number, isByBody: boole
   return [{body: bodies, ranges}];
 }
 
-function addTo(out: Float64Array, place: number, result: Float64Array): void {
-  for (let n = 0; n < 3; n++) out[place + n] += result[RESULT.e + n];
-  out[place + 3] += result[RESULT.v];
-  out[place + 5] += result[RESULT.eBound];
+function addTo(out: Float64Array, start: number, count: number, sum: DirectSum): void {
+  [RESULT.e, RESULT.e + 1, RESULT.e + 2, RESULT.v, undefined, RESULT.eBound].forEach((place, n) => {
+    if (place === undefined) return;
+    const result = sum.result(place);
+    for (let i = 0; i < count; i++) out[FORCE_STRIDE * (start + i) + n] += result[i];
+  });
 }
 
-function chargePosition(charges: ChargeColumns, index: number, out: Float64Array): void {
-  out[0] = charges.x[index];
-  out[1] = charges.y[index];
-  out[2] = charges.z[index];
-  out[3] = charges.xRemainder[index];
-  out[4] = charges.yRemainder[index];
-  out[5] = charges.zRemainder[index];
-  out[6] = charges.radius[index];
+function chargePositions(
+  charges: ChargeColumns,
+  from: number,
+  count: number,
+  out: PositionColumns,
+): void {
+  const to = from + count;
+  out.x.set(charges.x.subarray(from, to));
+  out.y.set(charges.y.subarray(from, to));
+  out.z.set(charges.z.subarray(from, to));
+  out.xRemainder.set(charges.xRemainder.subarray(from, to));
+  out.yRemainder.set(charges.yRemainder.subarray(from, to));
+  out.zRemainder.set(charges.zRemainder.subarray(from, to));
+  out.radius.set(charges.radius.subarray(from, to));
 }
 
 function bodyAt(starts: readonly number[], index: number): number {

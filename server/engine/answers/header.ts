@@ -8,7 +8,7 @@ import {inputDigest} from './digests.ts';
 import {notices} from './notices.ts';
 
 /** Changes whenever the same request may give other bits. */
-export const ENGINE_VERSION = '0.1.0';
+export const ENGINE_VERSION = '0.2.0';
 
 /** What an answer says besides its numbers; plain data, so that a thread can write the answer. */
 export interface AnswerHeader {

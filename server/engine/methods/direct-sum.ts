@@ -1,24 +1,42 @@
 import {sumError, UNIT_ROUNDOFF} from '../exact.ts';
-import {MIN_DISTANCE} from '../limits.ts';
-import type {ChargeColumns} from '../sources/charge-columns.ts';
-import {addFieldErrors} from '../sources/point-charge-errors.ts';
-import {addMagnitudes, MAGNITUDES} from '../sources/point-charge-magnitudes.ts';
 import {
-  addField,
-  addFieldGradient,
-  addPotential,
   BLOCK,
+  BOUND_CARRIED,
+  BOUND_SUMS,
+  BOUND_SUMS_AT,
+  CARRIED,
+  ERRORS,
+  ERRORS_AT,
+  MAGNITUDES,
+  MAGNITUDES_AT,
   SUMS,
-  type PointChargeKernel,
-} from '../sources/point-charge.ts';
+  SUMS_AT,
+  TARGET_NEAREST,
+  TARGET_RADIUS,
+  TARGET_X,
+  TARGET_Y,
+  TARGET_Z,
+} from '../kernels/layout.ts';
+import {plainKernels} from '../kernels/plain-kernels.ts';
+import type {SumKernel, SumKernels} from '../kernels/sum-kernels.ts';
+import {targetBatch, type TargetBatch} from '../kernels/target-batch.ts';
+import {MIN_DISTANCE} from '../limits.ts';
+import {positionColumns, type PositionColumns} from '../positions.ts';
+import type {ChargeColumns} from '../sources/charge-columns.ts';
+import type {Workplace} from '../workplace.ts';
 
 /**
  * Direct sum: every charge at every target, in the order of the columns. It is the definition that
  * other methods are held against; its cost is one evaluation a pair.
  *
+ * Targets are summed in batches, since a call of a kernel costs as much as hundreds of pairs and
+ * charges that are in the cache are met by many targets; what a target gets does not depend on the
+ * others.
+ *
  * Bounds come in two forms. `errors` repeats the sum and takes the rounding errors themselves
  * (point-charge-errors.ts), several times the work of the sum; `magnitudes` takes worst cases
- * (point-charge-magnitudes.ts), twice the work. The gradient always gets the second.
+ * (point-charge-magnitudes.ts), about the work of the sum once more. The gradient always gets the
+ * second.
  */
 export type SumKind = 'potential' | 'field' | 'fieldGradient';
 export type BoundKind = 'none' | 'errors' | 'magnitudes';
@@ -37,107 +55,156 @@ export interface SumOptions {
 /** From (included) to (excluded), in pairs, ascending: which charges act on a target. */
 export type Ranges = readonly number[];
 
-const KERNELS: Record<SumKind, PointChargeKernel> = {
-  potential: addPotential,
-  field: addField,
-  fieldGradient: addFieldGradient,
-};
-
-/** Places of a result: V, E, the gradient, and their bounds. */
+/** Columns of results: V, E, the gradient, and their bounds. */
 export const RESULT = {v: 0, e: 1, g: 4, vBound: 10, eBound: 11, gBound: 12, length: 13} as const;
+
+const RESULTS_OF: Record<SumKind, number> = {potential: 1, field: 4, fieldGradient: 10};
 
 // Worst cases of one term, relative, in units of u. Differences, squares and their sum give r² to
 // 5, 1/r to 4.5, q/r to 5.5; q d/r³ has three of 1/r, three products, a difference and a product,
-// 18.5; an entry of the gradient is at most 16.5 √3 + 97.5 + √6 < 130 of q/r³ in the Frobenius norm.
-// Additions within a block are at most BLOCK − 1; what is carried from block to block adds 1.
-const V_ROUNDINGS = 6 + BLOCK;
-const E_ROUNDINGS = 19 + BLOCK;
-const G_ROUNDINGS = 130 + Math.sqrt(6) * BLOCK;
+// 18.5; an entry of the gradient is at most 16.5 √3 + 97.5 of q/r³ in the Frobenius norm. A term
+// goes through at most BLOCK/2 − 1 additions in its half of a block (the first one, to zero, rounds
+// nothing) and one of the two halves; the sum carried from block to block rounds once, at the end.
+const ADDITIONS = BLOCK / 2 + 1;
+const V_ROUNDINGS = 6 + ADDITIONS;
+const E_ROUNDINGS = 19 + ADDITIONS;
+const G_ROUNDINGS = 127 + Math.sqrt(6) * ADDITIONS;
 /** Makes up for the rounding of sums of up to 1e6 positive terms. */
 const SUMMING = 1 + 1e-9;
 /** What underflow may take from a term of charges as small as 5e-324 at 1e-40 m. */
 const UNDERFLOW = {v: 1e-250, e: 1e-230, g: 1e-190} as const;
 
-/** Sums over the charges of one assembly; keeps the workspace between targets. */
+/** Targets of a batch: enough that a call of a kernel and a tile of charges pay off. */
+const MOST_TARGETS = 256;
+/** Evaluations of a batch, some 5 ms of them: between batches a call can be stopped. */
+const PER_BATCH: Record<BoundKind, number> = {none: 2e6, errors: 2.5e5, magnitudes: 1e6};
+
+/** Sums over the charges of one assembly; keeps its workspace from batch to batch. */
 export class DirectSum {
-  /** Charges that coincided with the last target: indices, ascending. */
-  coincident: number[] = [];
-  readonly result = new Float64Array(RESULT.length);
-  readonly #sums = new Float64Array(SUMS);
-  readonly #errors = new Float64Array(6);
-  readonly #magnitudes = new Float64Array(MAGNITUDES);
-  readonly #kernel: PointChargeKernel;
+  /** How many targets it takes at once. */
+  readonly capacity: number;
+  /** Positions of the targets, which the caller writes. */
+  readonly positions: PositionColumns;
+  /** Charges that coincided with targets of the last batch: indices, ascending. */
+  readonly coincident = new Map<number, readonly number[]>();
+  /** Targets of the last batch that have no sum: something coincides and is not to be left out. */
+  readonly withoutSum: number[] = [];
+  /** [m] The largest distance that counted as coincident. */
+  reach: number;
+  readonly #results: Float64Array;
+  readonly #batch: TargetBatch;
+  readonly #kernels: SumKernels;
+  readonly #kernel: SumKernel;
   readonly #charges: ChargeColumns;
   readonly #options: SumOptions;
 
-  constructor(charges: ChargeColumns, options: SumOptions) {
+  /** @param targets that there are; the batch need not be larger */
+  constructor(
+    charges: ChargeColumns,
+    options: SumOptions,
+    targets: number,
+    {memory, compiled}: Workplace,
+  ) {
+    const size = Math.floor(PER_BATCH[options.bounds] / charges.count);
+    this.capacity = Math.max(1, Math.min(MOST_TARGETS, targets, size));
+    this.#batch = targetBatch(this.capacity, memory);
+    this.positions = positionColumns(this.#batch.values, this.capacity);
+    this.#results = new Float64Array(RESULT.length * this.capacity);
+    const isOnHeap = charges.address !== undefined && this.#batch.address !== undefined;
+    this.#kernels = isOnHeap && compiled ? compiled : plainKernels;
+    this.#kernel = this.#kernels[options.kind];
     this.#charges = charges;
     this.#options = options;
-    this.#kernel = KERNELS[options.kind];
+    this.reach = options.coincidenceDistance;
+  }
+
+  /** A column of RESULT: [C/m, C/m², C/m³], without the factor 1/(4π ε₀ ε_r). */
+  result(place: number): Float64Array {
+    return this.#results.subarray(place * this.capacity, (place + 1) * this.capacity);
+  }
+
+  /** Sums at the targets `first` … `last` − 1 of the batch, into the columns of results. */
+  compute(first: number, last: number, ranges: Ranges): void {
+    this.coincident.clear();
+    this.withoutSum.length = 0;
+    this.#sum(first, last, ranges);
+    const {values, capacity} = this.#batch;
+    for (let i = first; i < last; i++) {
+      const reach = this.#reachOf(values[TARGET_RADIUS * capacity + i]);
+      if (reach > this.reach) this.reach = reach;
+      const limit = Math.max(reach, MIN_DISTANCE);
+      if (values[TARGET_NEAREST * capacity + i] <= limit * limit) this.#sumApart(i, ranges, limit);
+    }
   }
 
   /** [m] Charges may be coincident with a target of this radius up to here. */
-  reach(targetRadius: number): number {
+  #reachOf(targetRadius: number): number {
     const {coincidenceDistance} = this.#options;
     return Math.max(coincidenceDistance, this.#charges.largestRadius + targetRadius);
   }
 
-  /**
-   * Sums at one target into `result`, without the factor 1/(4π ε₀ ε_r) [C/m, C/m², C/m³].
-   *
-   * @param target x, y, z, their remainders and radius [m] × 7
-   * @returns whether there is a sum; if not, charges are coincident and not to be left out
-   */
-  at(target: Float64Array, ranges: Ranges): boolean {
-    if (this.coincident.length > 0) this.coincident = [];
-    const reach = Math.max(this.reach(target[6]), MIN_DISTANCE);
-    let used = ranges;
-    if (!this.#add(target, used, reach * reach)) {
-      used = this.#separate(target, ranges, reach * reach);
-      if (this.coincident.length > 0 && !this.#options.isExcluding) return false;
-      this.#add(target, used, -1);
-    }
-    const {result} = this;
-    const sums = this.#sums;
-    for (let n = 0; n < SUMS / 2; n++) result[n] = sums[2 * n] + sums[2 * n + 1];
-    if (this.#options.bounds !== 'none') this.#bound(target, used);
-    return true;
+  /** One target again, without the charges that coincide with it. */
+  #sumApart(i: number, ranges: Ranges, limit: number): void {
+    const coincident: number[] = [];
+    const kept = this.#separate(i, ranges, limit * limit, coincident);
+    if (coincident.length > 0) this.coincident.set(i, coincident);
+    if (coincident.length > 0 && !this.#options.isExcluding) this.withoutSum.push(i);
+    else this.#sum(i, i + 1, kept);
   }
 
-  #add(target: Float64Array, ranges: Ranges, limit: number): boolean {
-    this.#sums.fill(0);
-    for (let n = 0; n < ranges.length; n += 2) {
-      const stopped = this.#kernel(
-        this.#charges,
-        ranges[n],
-        ranges[n + 1],
-        target[0],
-        target[1],
-        target[2],
-        limit,
-        this.#sums,
-      );
-      if (stopped >= 0) return false;
+  #sum(first: number, last: number, ranges: Ranges): void {
+    const batch = this.#batch;
+    const {values, capacity} = batch;
+    const {bounds, kind} = this.#options;
+    values.fill(Infinity, TARGET_NEAREST * capacity + first, TARGET_NEAREST * capacity + last);
+    this.#run(this.#kernel, first, last, ranges, SUMS_AT, SUMS);
+    for (let n = 0; n < RESULTS_OF[kind]; n++) {
+      let row = SUMS_AT * capacity + SUMS * first + n;
+      for (let i = first; i < last; i++, row += SUMS) {
+        this.#results[n * capacity + i] = values[row] + values[row + CARRIED];
+      }
     }
-    return true;
+    if (bounds !== 'none') this.#bound(first, last, ranges);
+  }
+
+  /** Clears rows of the batch and lets a kernel add to them. */
+  #run(
+    kernel: SumKernel,
+    first: number,
+    last: number,
+    ranges: Ranges,
+    at: number,
+    row: number,
+  ): void {
+    const batch = this.#batch;
+    const start = at * batch.capacity;
+    batch.values.fill(0, start + row * first, start + row * last);
+    for (let n = 0; n < ranges.length; n += 2) {
+      kernel(this.#charges, ranges[n], ranges[n + 1], batch, first, last);
+    }
   }
 
   /** Notes the coincident charges; returns the ranges without them and without charges of zero. */
-  #separate(target: Float64Array, ranges: Ranges, limit: number): Ranges {
+  #separate(target: number, ranges: Ranges, limit: number, coincident: number[]): Ranges {
     const {x, y, z, q, radius} = this.#charges;
+    const {values, capacity} = this.#batch;
+    const tx = values[TARGET_X * capacity + target];
+    const ty = values[TARGET_Y * capacity + target];
+    const tz = values[TARGET_Z * capacity + target];
+    const targetRadius = values[TARGET_RADIUS * capacity + target];
     const kept: number[] = [];
     for (let n = 0; n < ranges.length; n += 2) {
       let start = ranges[n];
       for (let j = ranges[n]; j < ranges[n + 1]; j++) {
-        const dx = target[0] - x[j];
-        const dy = target[1] - y[j];
-        const dz = target[2] - z[j];
+        const dx = tx - x[j];
+        const dy = ty - y[j];
+        const dz = tz - z[j];
         const square = dx * dx + dy * dy + dz * dz;
         if (square > limit) continue;
-        const own = Math.max(this.#options.coincidenceDistance, radius[j] + target[6]);
+        const own = Math.max(this.#options.coincidenceDistance, radius[j] + targetRadius);
         const isNear = Math.sqrt(square) <= Math.max(own, MIN_DISTANCE);
         if (!isNear) continue;
-        if (q[j] !== 0) this.coincident.push(j);
+        if (q[j] !== 0) coincident.push(j);
         if (j > start) kept.push(start, j);
         start = j + 1;
       }
@@ -146,59 +213,63 @@ export class DirectSum {
     return kept;
   }
 
-  #bound(target: Float64Array, ranges: Ranges): void {
+  #bound(first: number, last: number, ranges: Ranges): void {
     const {bounds, kind} = this.#options;
-    if (bounds === 'errors') this.#boundByErrors(target, ranges);
+    let count = 0;
+    for (let n = 0; n < ranges.length; n += 2) count += ranges[n + 1] - ranges[n];
+    if (bounds === 'errors') {
+      const {values, capacity} = this.#batch;
+      const start = BOUND_SUMS_AT * capacity;
+      values.fill(0, start + BOUND_SUMS * first, start + BOUND_SUMS * last);
+      this.#run(this.#kernels.fieldErrors, first, last, ranges, ERRORS_AT, ERRORS);
+      for (let i = first; i < last; i++) this.#boundByErrors(i, count);
+    }
     if (bounds === 'magnitudes' || kind === 'fieldGradient') {
-      this.#boundByMagnitudes(target, ranges);
+      this.#run(this.#kernels.magnitudes, first, last, ranges, MAGNITUDES_AT, MAGNITUDES);
+      for (let i = first; i < last; i++) this.#boundByMagnitudes(i, count);
     }
   }
 
-  #boundByErrors(target: Float64Array, ranges: Ranges): void {
-    const {result} = this;
-    const sums = this.#sums;
-    const errors = this.#errors;
-    sums.fill(0);
-    errors.fill(0);
-    let count = 0;
-    for (let n = 0; n < ranges.length; n += 2) {
-      addFieldErrors(this.#charges, ranges[n], ranges[n + 1], target, sums, errors);
-      count += ranges[n + 1] - ranges[n];
-    }
-    for (let n = 0; n < 4; n++) {
-      errors[n] += sumError(sums[2 * n], sums[2 * n + 1], sums[2 * n] + sums[2 * n + 1]);
-    }
-    const [v, ex, ey, ez, vRest, eRest] = errors;
-    result[RESULT.vBound] = Math.abs(v) + (8 + count / 8) * vRest;
-    result[RESULT.eBound] = Math.sqrt(ex * ex + ey * ey + ez * ez) + (32 + count / 8) * eRest;
-    if (this.#charges.hasTiny) {
-      result[RESULT.vBound] += count * UNDERFLOW.v;
-      result[RESULT.eBound] += count * UNDERFLOW.e;
-    }
+  #boundByErrors(i: number, count: number): void {
+    const {values, capacity} = this.#batch;
+    const row = ERRORS_AT * capacity + ERRORS * i;
+    const v = values[row] + this.#lastError(i, 0);
+    const ex = values[row + 1] + this.#lastError(i, 1);
+    const ey = values[row + 2] + this.#lastError(i, 2);
+    const ez = values[row + 3] + this.#lastError(i, 3);
+    const vRest = values[row + 4];
+    const eRest = values[row + 5];
+    const tiny = this.#charges.hasTiny ? count : 0;
+    this.#set(RESULT.vBound, i, Math.abs(v) + (8 + count / 8) * vRest + tiny * UNDERFLOW.v);
+    const e = Math.sqrt(ex * ex + ey * ey + ez * ez);
+    this.#set(RESULT.eBound, i, e + (32 + count / 8) * eRest + tiny * UNDERFLOW.e);
   }
 
-  #boundByMagnitudes(target: Float64Array, ranges: Ranges): void {
-    const {result} = this;
-    const out = this.#magnitudes;
-    out.fill(0);
-    let count = 0;
-    for (let n = 0; n < ranges.length; n += 2) {
-      const from = ranges[n];
-      const to = ranges[n + 1];
-      addMagnitudes(this.#charges, from, to, target[0], target[1], target[2], target[6], out);
-      count += to - from;
-    }
+  /** What the last addition loses, that of a sum and its carried error. */
+  #lastError(i: number, n: number): number {
+    const {values, capacity} = this.#batch;
+    const at = BOUND_SUMS_AT * capacity + BOUND_SUMS * i + n;
+    const carried = values[at + BOUND_CARRIED];
+    return sumError(values[at], carried, values[at] + carried);
+  }
+
+  #boundByMagnitudes(i: number, count: number): void {
+    const {values, capacity} = this.#batch;
+    const row = MAGNITUDES_AT * capacity + MAGNITUDES * i;
     const own = this.#options.chargeRoundings;
-    const u = UNIT_ROUNDOFF;
+    const tiny = this.#charges.hasTiny ? count : 0;
+    const bound = (place: number, n: number, roundings: number, underflow: number): void => {
+      const rounded = UNIT_ROUNDOFF * roundings * values[row + n] + values[row + n + 3];
+      this.#set(place, i, rounded * SUMMING + tiny * underflow);
+    };
     if (this.#options.bounds === 'magnitudes') {
-      result[RESULT.vBound] = (u * (V_ROUNDINGS + own) * out[0] + out[3]) * SUMMING;
-      result[RESULT.eBound] = (u * (E_ROUNDINGS + own) * out[1] + out[4]) * SUMMING;
+      bound(RESULT.vBound, 0, V_ROUNDINGS + own, UNDERFLOW.v);
+      bound(RESULT.eBound, 1, E_ROUNDINGS + own, UNDERFLOW.e);
     }
-    result[RESULT.gBound] = (u * (G_ROUNDINGS + Math.sqrt(6) * own) * out[2] + out[5]) * SUMMING;
-    if (this.#charges.hasTiny) {
-      result[RESULT.vBound] += count * UNDERFLOW.v;
-      result[RESULT.eBound] += count * UNDERFLOW.e;
-      result[RESULT.gBound] += count * UNDERFLOW.g;
-    }
+    bound(RESULT.gBound, 2, G_ROUNDINGS + Math.sqrt(6) * own, UNDERFLOW.g);
+  }
+
+  #set(place: number, i: number, value: number): void {
+    this.#results[place * this.capacity + i] = value;
   }
 }

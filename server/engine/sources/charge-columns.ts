@@ -1,3 +1,15 @@
+import {
+  CHARGE_COLUMNS,
+  CHARGE_Q,
+  CHARGE_Q_REMAINDER,
+  CHARGE_RADIUS,
+  CHARGE_X,
+  CHARGE_X_REMAINDER,
+  CHARGE_Y,
+  CHARGE_Y_REMAINDER,
+  CHARGE_Z,
+  CHARGE_Z_REMAINDER,
+} from '../kernels/layout.ts';
 import type {Memory} from '../memory.ts';
 
 /**
@@ -9,6 +21,10 @@ import type {Memory} from '../memory.ts';
  */
 export interface ChargeColumns {
   readonly count: number;
+  /** Numbers from the beginning of one column to that of the next, in the order of layout.ts. */
+  readonly stride: number;
+  /** [bytes] where `x` begins in the heap; undefined elsewhere */
+  readonly address: number | undefined;
   /** [m] */
   readonly x: Float64Array;
   readonly y: Float64Array;
@@ -31,23 +47,48 @@ export interface ChargeColumns {
 /** [C] Products of smaller charges may lose digits to underflow. */
 export const TINY_CHARGE = 1e-200;
 
-const COLUMNS = 9;
+/** Columns begin at full cache lines. */
+const LINE = 8;
+
+/** A copy in other memory. */
+export function copyColumns(charges: ChargeColumns, memory: Memory): ChargeColumns {
+  const copy = chargeColumns(charges.count, memory);
+  for (const name of NAMES) copy[name].set(charges[name]);
+  const {largestRadius, hasTiny} = charges;
+  return {...copy, largestRadius, hasTiny};
+}
+
+const NAMES = [
+  'x',
+  'y',
+  'z',
+  'q',
+  'radius',
+  'xRemainder',
+  'yRemainder',
+  'zRemainder',
+  'qRemainder',
+] as const;
 
 /** Columns of zeros. */
 export function chargeColumns(count: number, memory: Memory): ChargeColumns {
-  const all = memory(COLUMNS * count);
-  const column = (index: number): Float64Array => all.subarray(index * count, (index + 1) * count);
+  const stride = LINE * Math.ceil(count / LINE);
+  const all = memory(CHARGE_COLUMNS * stride);
+  const column = (index: number): Float64Array =>
+    all.subarray(index * stride, index * stride + count);
   return {
     count,
-    x: column(0),
-    y: column(1),
-    z: column(2),
-    q: column(3),
-    radius: column(4),
-    xRemainder: column(5),
-    yRemainder: column(6),
-    zRemainder: column(7),
-    qRemainder: column(8),
+    stride,
+    address: memory.addressOf(all),
+    x: column(CHARGE_X),
+    y: column(CHARGE_Y),
+    z: column(CHARGE_Z),
+    q: column(CHARGE_Q),
+    radius: column(CHARGE_RADIUS),
+    xRemainder: column(CHARGE_X_REMAINDER),
+    yRemainder: column(CHARGE_Y_REMAINDER),
+    zRemainder: column(CHARGE_Z_REMAINDER),
+    qRemainder: column(CHARGE_Q_REMAINDER),
     largestRadius: 0,
     hasTiny: false,
   };

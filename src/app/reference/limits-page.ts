@@ -81,10 +81,10 @@ export class LimitsPage {
   protected readonly rows = [
     {what: 'Body of a request', limit: '8 MiB'},
     {what: 'Charges of one body, points of one list', limit: '100 000'},
-    {what: 'Pairs of one call', limit: '500 000 000'},
+    {what: 'Pairs of one call', limit: '2 000 000 000'},
     {what: 'Rows of an answer in JSON', limit: '200 000'},
     {what: 'Bodies in a call for forces', limit: '200'},
     {what: 'Computed at once, without a worker', limit: 'up to 50 000 pairs'},
-    {what: 'Time to compute', limit: '10 s'},
+    {what: 'Time to compute', limit: '30 s'},
   ];
 }

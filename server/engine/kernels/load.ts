@@ -1,0 +1,64 @@
+import {existsSync, readFileSync} from 'node:fs';
+import {fileURLToPath} from 'node:url';
+
+import type {DirectExports} from './compiled-kernels.ts';
+
+// The only file that touches WebAssembly.
+
+/** Memory of the kernels, which all threads share. */
+export type KernelMemory = WebAssembly.Memory;
+export type KernelModule = WebAssembly.Module;
+/** What the module exports; each family of kernels adds its own. */
+export type KernelExports = DirectExports & {readonly version: () => number};
+
+/** Raised, with `version` in assembly/direct.ts, whenever the kernels are called in another way. */
+const VERSION = 1;
+const PAGE = 65_536;
+/** Below this a heap is of no use [bytes]. */
+const SMALLEST = 2 ** 24;
+
+/** [bytes] The first page belongs to the static data of the module and is never handed out. */
+export const STATIC_BYTES = PAGE;
+
+/** From the sources, and from dist/server/engine/kernels. */
+const PLACES = ['../../../dist/engine/kernels.wasm', '../../../engine/kernels.wasm'];
+
+/** The compiled kernels, or undefined where there are none or this machine has no SIMD. */
+export function loadKernels(places: readonly string[] = PLACES): KernelModule | undefined {
+  const file = places
+    .map(place => fileURLToPath(new URL(place, import.meta.url)))
+    .find(path => existsSync(path));
+  if (!file) return undefined;
+  try {
+    return new WebAssembly.Module(readFileSync(file));
+  } catch (error) {
+    // An engine without SIMD or threads.
+    if (error instanceof WebAssembly.CompileError) return undefined;
+    throw error;
+  }
+}
+
+/** The kernels of this thread. */
+export function instantiate(module: KernelModule, memory: KernelMemory): KernelExports | undefined {
+  // The module is ours: its exports are what the sources say.
+  const exports = new WebAssembly.Instance(module, {env: {memory}}).exports as KernelExports;
+  // Built from other sources.
+  return exports.version() === VERSION ? exports : undefined;
+}
+
+/**
+ * Memory that cannot grow, so views of it stay valid; pages cost nothing until they are written.
+ * Where so much address space cannot be had, half of it is tried.
+ *
+ * @throws RangeError if hardly any can be had
+ */
+export function kernelMemory(bytes: number): KernelMemory {
+  const pages = Math.ceil(bytes / PAGE);
+  try {
+    return new WebAssembly.Memory({initial: pages, maximum: pages, shared: true});
+  } catch (error) {
+    // Not to be had.
+    if (!(error instanceof RangeError) || bytes / 2 < SMALLEST) throw error;
+    return kernelMemory(bytes / 2);
+  }
+}
