@@ -96,7 +96,9 @@ function rowAlong(
   const third = k * c[axis];
   const thirdLost = productError(k, c[axis], third);
   const thirdStepLost = k * c[lost];
-  for (let n = at; n < end; n++) {
+  // Rows mostly run along one axis.
+  const isStill = step === 0 && stepLost === 0;
+  for (let n = at; n < (isStill ? at + 1 : end); n++) {
     const times = i + n - at;
     const first = times * step;
     // The product with half a step is exact, since `times` has no more than 26 bits.
@@ -108,6 +110,14 @@ function rowAlong(
     remainder += secondLost + sumError(one, second, two) + secondStepLost;
     remainder += thirdLost + sumError(two, third, three) + thirdStepLost;
     values[n] = three;
+    remainders[n] = remainder;
+  }
+  if (!isStill) return;
+  // Not fill: in shared memory it is slower than this.
+  const value = values[at];
+  const remainder = remainders[at];
+  for (let n = at + 1; n < end; n++) {
+    values[n] = value;
     remainders[n] = remainder;
   }
 }

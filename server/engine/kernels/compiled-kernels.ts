@@ -14,11 +14,31 @@ type CompiledKernel = (
   last: number,
 ) => void;
 
-export type DirectExports = Readonly<Record<keyof SumKernels, CompiledKernel>>;
+type PairKernel = 'potential' | 'field' | 'fieldGradient' | 'fieldErrors' | 'magnitudes';
+
+export type DirectExports = Readonly<Record<PairKernel, CompiledKernel>> & {
+  readonly clear: (address: number, bytes: number) => void;
+  readonly finish: (
+    batch: number,
+    capacity: number,
+    columns: number,
+    first: number,
+    last: number,
+  ) => void;
+};
+
+const NUMBER = Float64Array.BYTES_PER_ELEMENT;
 
 /** The kernels of WebAssembly, for charges and batches that lie in the heap. */
 export function compiledKernels(exports: DirectExports): SumKernels {
   return {
+    clear(batch, at, row, first, last) {
+      const start = NUMBER * (at * batch.capacity + row * first);
+      exports.clear(addressOf(batch) + start, NUMBER * row * (last - first));
+    },
+    finish(batch, columns, first, last) {
+      exports.finish(addressOf(batch), batch.capacity, columns, first, last);
+    },
     potential: onHeap(exports.potential),
     field: onHeap(exports.field),
     fieldGradient: onHeap(exports.fieldGradient),

@@ -38,7 +38,10 @@ export const SUMS_AT = 8;
 export const BOUND_SUMS_AT = 28;
 export const ERRORS_AT = 36;
 export const MAGNITUDES_AT = 42;
-export const BATCH_PARTS = 48;
+// … and results, columns again.
+export const RESULTS_AT = 48;
+export const RESULTS = 13;
+export const BATCH_PARTS = 61;
 /** Numbers after the parts: room for two charges. */
 export const SPARE = 18;
 

@@ -12,7 +12,7 @@ export type KernelModule = WebAssembly.Module;
 export type KernelExports = DirectExports & {readonly version: () => number};
 
 /** Raised, with `version` in assembly/direct.ts, whenever the kernels are called in another way. */
-const VERSION = 1;
+const VERSION = 2;
 const PAGE = 65_536;
 /** Below this a heap is of no use [bytes]. */
 const SMALLEST = 2 ** 24;

@@ -11,8 +11,18 @@ export type SumKernel = (
   last: number,
 ) => void;
 
-/** The kernels of a direct sum: three for sums, two for their bounds. */
+/** The kernels of a direct sum: three for sums, two for their bounds, and what stands around them. */
 export interface SumKernels {
+  /** Fills rows with zeros: `row` numbers a target, in the part that begins at `at`. */
+  readonly clear: (
+    batch: TargetBatch,
+    at: number,
+    row: number,
+    first: number,
+    last: number,
+  ) => void;
+  /** Adds sums and their carried errors, into the first `columns` columns of results. */
+  readonly finish: (batch: TargetBatch, columns: number, first: number, last: number) => void;
   readonly potential: SumKernel;
   readonly field: SumKernel;
   readonly fieldGradient: SumKernel;

@@ -4,11 +4,12 @@ import {
   BOUND_CARRIED,
   BOUND_SUMS,
   BOUND_SUMS_AT,
-  CARRIED,
   ERRORS,
   ERRORS_AT,
   MAGNITUDES,
   MAGNITUDES_AT,
+  RESULTS,
+  RESULTS_AT,
   SUMS,
   SUMS_AT,
   TARGET_NEAREST,
@@ -19,7 +20,7 @@ import {
 } from '../kernels/layout.ts';
 import {plainKernels} from '../kernels/plain-kernels.ts';
 import type {SumKernel, SumKernels} from '../kernels/sum-kernels.ts';
-import {targetBatch, type TargetBatch} from '../kernels/target-batch.ts';
+import {batchColumn, targetBatch, type TargetBatch} from '../kernels/target-batch.ts';
 import {MIN_DISTANCE} from '../limits.ts';
 import {positionColumns, type PositionColumns} from '../positions.ts';
 import type {ChargeColumns} from '../sources/charge-columns.ts';
@@ -56,7 +57,15 @@ export interface SumOptions {
 export type Ranges = readonly number[];
 
 /** Columns of results: V, E, the gradient, and their bounds. */
-export const RESULT = {v: 0, e: 1, g: 4, vBound: 10, eBound: 11, gBound: 12, length: 13} as const;
+export const RESULT = {
+  v: 0,
+  e: 1,
+  g: 4,
+  vBound: 10,
+  eBound: 11,
+  gBound: 12,
+  length: RESULTS,
+} as const;
 
 const RESULTS_OF: Record<SumKind, number> = {potential: 1, field: 4, fieldGradient: 10};
 
@@ -91,7 +100,7 @@ export class DirectSum {
   readonly withoutSum: number[] = [];
   /** [m] The largest distance that counted as coincident. */
   reach: number;
-  readonly #results: Float64Array;
+  readonly #nearest: Float64Array;
   readonly #batch: TargetBatch;
   readonly #kernels: SumKernels;
   readonly #kernel: SumKernel;
@@ -109,7 +118,7 @@ export class DirectSum {
     this.capacity = Math.max(1, Math.min(MOST_TARGETS, targets, size));
     this.#batch = targetBatch(this.capacity, memory);
     this.positions = positionColumns(this.#batch.values, this.capacity);
-    this.#results = new Float64Array(RESULT.length * this.capacity);
+    this.#nearest = batchColumn(this.#batch, TARGET_NEAREST);
     const isOnHeap = charges.address !== undefined && this.#batch.address !== undefined;
     this.#kernels = isOnHeap && compiled ? compiled : plainKernels;
     this.#kernel = this.#kernels[options.kind];
@@ -120,7 +129,7 @@ export class DirectSum {
 
   /** A column of RESULT: [C/m, C/m², C/m³], without the factor 1/(4π ε₀ ε_r). */
   result(place: number): Float64Array {
-    return this.#results.subarray(place * this.capacity, (place + 1) * this.capacity);
+    return batchColumn(this.#batch, RESULTS_AT + place);
   }
 
   /** Sums at the targets `first` … `last` − 1 of the batch, into the columns of results. */
@@ -128,12 +137,21 @@ export class DirectSum {
     this.coincident.clear();
     this.withoutSum.length = 0;
     this.#sum(first, last, ranges);
-    const {values, capacity} = this.#batch;
+    const {radius} = this.positions;
+    const nearest = this.#nearest;
+    let largest = 0;
+    let least = Infinity;
     for (let i = first; i < last; i++) {
-      const reach = this.#reachOf(values[TARGET_RADIUS * capacity + i]);
-      if (reach > this.reach) this.reach = reach;
-      const limit = Math.max(reach, MIN_DISTANCE);
-      if (values[TARGET_NEAREST * capacity + i] <= limit * limit) this.#sumApart(i, ranges, limit);
+      if (radius[i] > largest) largest = radius[i];
+      if (nearest[i] < least) least = nearest[i];
+    }
+    const reach = this.#reachOf(largest);
+    if (reach > this.reach) this.reach = reach;
+    // In most batches nothing is that near to anything.
+    if (least > square(Math.max(reach, MIN_DISTANCE))) return;
+    for (let i = first; i < last; i++) {
+      const limit = square(Math.max(this.#reachOf(radius[i]), MIN_DISTANCE));
+      if (nearest[i] <= limit) this.#sumApart(i, ranges, limit);
     }
   }
 
@@ -146,24 +164,17 @@ export class DirectSum {
   /** One target again, without the charges that coincide with it. */
   #sumApart(i: number, ranges: Ranges, limit: number): void {
     const coincident: number[] = [];
-    const kept = this.#separate(i, ranges, limit * limit, coincident);
+    const kept = this.#separate(i, ranges, limit, coincident);
     if (coincident.length > 0) this.coincident.set(i, coincident);
     if (coincident.length > 0 && !this.#options.isExcluding) this.withoutSum.push(i);
     else this.#sum(i, i + 1, kept);
   }
 
   #sum(first: number, last: number, ranges: Ranges): void {
-    const batch = this.#batch;
-    const {values, capacity} = batch;
     const {bounds, kind} = this.#options;
-    values.fill(Infinity, TARGET_NEAREST * capacity + first, TARGET_NEAREST * capacity + last);
+    this.#nearest.fill(Infinity, first, last);
     this.#run(this.#kernel, first, last, ranges, SUMS_AT, SUMS);
-    for (let n = 0; n < RESULTS_OF[kind]; n++) {
-      let row = SUMS_AT * capacity + SUMS * first + n;
-      for (let i = first; i < last; i++, row += SUMS) {
-        this.#results[n * capacity + i] = values[row] + values[row + CARRIED];
-      }
-    }
+    this.#kernels.finish(this.#batch, RESULTS_OF[kind], first, last);
     if (bounds !== 'none') this.#bound(first, last, ranges);
   }
 
@@ -177,8 +188,7 @@ export class DirectSum {
     row: number,
   ): void {
     const batch = this.#batch;
-    const start = at * batch.capacity;
-    batch.values.fill(0, start + row * first, start + row * last);
+    this.#kernels.clear(batch, at, row, first, last);
     for (let n = 0; n < ranges.length; n += 2) {
       kernel(this.#charges, ranges[n], ranges[n + 1], batch, first, last);
     }
@@ -218,9 +228,7 @@ export class DirectSum {
     let count = 0;
     for (let n = 0; n < ranges.length; n += 2) count += ranges[n + 1] - ranges[n];
     if (bounds === 'errors') {
-      const {values, capacity} = this.#batch;
-      const start = BOUND_SUMS_AT * capacity;
-      values.fill(0, start + BOUND_SUMS * first, start + BOUND_SUMS * last);
+      this.#kernels.clear(this.#batch, BOUND_SUMS_AT, BOUND_SUMS, first, last);
       this.#run(this.#kernels.fieldErrors, first, last, ranges, ERRORS_AT, ERRORS);
       for (let i = first; i < last; i++) this.#boundByErrors(i, count);
     }
@@ -270,6 +278,8 @@ export class DirectSum {
   }
 
   #set(place: number, i: number, value: number): void {
-    this.#results[place * this.capacity + i] = value;
+    this.#batch.values[(RESULTS_AT + place) * this.capacity + i] = value;
   }
 }
+
+const square = (x: number): number => x * x;

@@ -93,7 +93,7 @@ const potentialAt: TargetKernel = (charges, from, to, x, y, z, nearest, out, row
         const dy = y - sy[j];
         const dz = z - sz[j];
         const square = dx * dx + dy * dy + dz * dz;
-        if (square < near) near = square;
+        near = Math.min(near, square);
         v += q[j] * (1 / Math.sqrt(square));
       }
       vBlock += v;
@@ -122,7 +122,7 @@ const fieldAt: TargetKernel = (charges, from, to, x, y, z, nearest, out, row) =>
         const dy = y - sy[j];
         const dz = z - sz[j];
         const square = dx * dx + dy * dy + dz * dz;
-        if (square < near) near = square;
+        near = Math.min(near, square);
         const inverse = 1 / Math.sqrt(square);
         const potential = q[j] * inverse;
         const strength = potential * (inverse * inverse);
@@ -167,7 +167,7 @@ const gradientAt: TargetKernel = (charges, from, to, x, y, z, nearest, out, row)
         const dy = y - sy[j];
         const dz = z - sz[j];
         const square = dx * dx + dy * dy + dz * dz;
-        if (square < near) near = square;
+        near = Math.min(near, square);
         const inverse = 1 / Math.sqrt(square);
         const potential = q[j] * inverse;
         const strength = potential * (inverse * inverse);

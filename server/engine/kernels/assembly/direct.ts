@@ -1,6 +1,8 @@
 import {
   BATCH_PARTS,
   BLOCK,
+  CARRIED,
+  RESULTS_AT,
   SUMS,
   SUMS_AT,
   TARGET_NEAREST,
@@ -21,7 +23,7 @@ export * from './bounds';
 
 /** What `load.ts` expects: raised whenever the kernels are called in another way. */
 export function version(): i32 {
-  return 1;
+  return 2;
 }
 
 const POTENTIAL = 0;
@@ -71,6 +73,29 @@ function sum(
       }
       const nearest = min(f64x2.extract_lane(near, 0), f64x2.extract_lane(near, 1));
       store<f64>(target + column * TARGET_NEAREST, nearest);
+    }
+  }
+}
+
+export function clear(address: usize, bytes: usize): void {
+  memory.fill(address, 0, bytes);
+}
+
+/** Adds sums and their carried errors, into the first `columns` columns of results. */
+export function finish(
+  batch: usize,
+  capacity: usize,
+  columns: i32,
+  first: i32,
+  last: i32,
+): void {
+  const column = capacity << 3;
+  for (let i = first; i < last; i++) {
+    const sums = batch + column * SUMS_AT + ((<usize>i * SUMS) << 3);
+    let result = batch + column * RESULTS_AT + (<usize>i << 3);
+    for (let at = sums; at < sums + (<usize>columns << 3); at += 8) {
+      store<f64>(result, load<f64>(at) + load<f64>(at, CARRIED << 3));
+      result += column;
     }
   }
 }
