@@ -3,6 +3,7 @@ import {answerHeader, type AnswerHeader} from './answers/header.ts';
 import {totalOf} from './compensated-sum.ts';
 import {symbolOf, type FilledRequest} from './filled-request.ts';
 import {FIELD_COLUMNS, FORCE_STRIDE, type FieldColumn, type Job} from './jobs.ts';
+import {PAIR_WEIGHT} from './limits.ts';
 import type {Memory} from './memory.ts';
 import type {BoundKind, SumKind} from './methods/direct-sum.ts';
 import {packAssembly, packProbes, type PackedAssembly} from './pack-charges.ts';
@@ -21,7 +22,7 @@ export interface PackedCall {
 const PAIRS_WITH_ERRORS = 5e7;
 
 /** Evaluations that make a block: some 20 ms, so that calls share the threads and stop soon. */
-const PER_BLOCK: Record<BoundKind, number> = {none: 8e6, errors: 1e6, magnitudes: 4e6};
+const PER_BLOCK: Record<BoundKind, number> = {none: 8e6, errors: 6e5, magnitudes: 2.5e6};
 const TARGETS_PER_BLOCK = 16_384;
 
 export function pack(plan: Plan, memory: Memory): PackedCall {
@@ -48,8 +49,9 @@ function results(length: number, memory: Memory): Pick<Job, 'out' | 'outAddress'
 }
 
 /** How many targets make a block: from the size of the call, never from the number of threads. */
-function targetsPerBlock(sources: number, bounds: BoundKind): number {
-  return Math.max(1, Math.min(TARGETS_PER_BLOCK, Math.floor(PER_BLOCK[bounds] / sources)));
+function targetsPerBlock(sources: number, sum: SumKind, bounds: BoundKind): number {
+  const targets = Math.floor(PER_BLOCK[bounds] / PAIR_WEIGHT[sum] / sources);
+  return Math.max(1, Math.min(TARGETS_PER_BLOCK, targets));
 }
 
 /** Appends the starts of the blocks of `from` … `to` − 1. */
@@ -65,7 +67,7 @@ function packFields(plan: Plan, memory: Memory): PackedCall {
   const columns = fieldColumns(request);
   const bounds = boundKind(request.accuracy?.bounds === true, plan.sources * count);
   const blocks: number[] = [];
-  appendBlocks(blocks, 0, count, targetsPerBlock(sources, bounds));
+  appendBlocks(blocks, 0, count, targetsPerBlock(sources, sumKind(request), bounds));
   blocks.push(count);
   return {
     header: answerHeader(plan, assembly.placements),
@@ -136,7 +138,7 @@ function packForces(plan: Plan, memory: Memory): PackedCall {
   const include = request.include ?? [];
   const hasBounds = request.accuracy?.bounds === true;
   const bounds = boundKind(hasBounds, work);
-  const size = targetsPerBlock(sources, bounds);
+  const size = targetsPerBlock(sources, 'field', bounds);
   const blocks: number[] = [];
   for (let b = 0; b + 1 < assembly.starts.length; b++) {
     appendBlocks(blocks, assembly.starts[b], assembly.starts[b + 1], size);
