@@ -1,6 +1,14 @@
 import type {Unit} from '../../shared/units.ts';
 import {productError, quotientError, sumError, UNIT_ROUNDOFF} from './exact.ts';
-import {POSITION_COLUMNS} from './kernels/layout.ts';
+import {
+  TARGET_RADIUS,
+  TARGET_X,
+  TARGET_X_REMAINDER,
+  TARGET_Y,
+  TARGET_Y_REMAINDER,
+  TARGET_Z,
+  TARGET_Z_REMAINDER,
+} from './kernels/layout.ts';
 import type {Rotation} from './rotation.ts';
 
 /** A position [m]: doubles, what they lack to the exact one, and the radius that covers it twice. */
@@ -33,16 +41,20 @@ export interface PositionColumns {
   readonly yRemainder: Float64Array;
   readonly zRemainder: Float64Array;
   readonly radius: Float64Array;
-  readonly all: readonly Float64Array[];
 }
 
-/** The first POSITION_COLUMNS columns of `values`, each `stride` long. */
+/** The first columns of `values`, each `stride` long, as in a batch of targets. */
 export function positionColumns(values: Float64Array, stride: number): PositionColumns {
-  const all = Array.from({length: POSITION_COLUMNS}, (_, n) =>
-    values.subarray(n * stride, (n + 1) * stride),
-  );
-  const [x, y, z, xRemainder, yRemainder, zRemainder, radius] = all;
-  return {x, y, z, xRemainder, yRemainder, zRemainder, radius, all};
+  const column = (n: number): Float64Array => values.subarray(n * stride, (n + 1) * stride);
+  return {
+    x: column(TARGET_X),
+    y: column(TARGET_Y),
+    z: column(TARGET_Z),
+    xRemainder: column(TARGET_X_REMAINDER),
+    yRemainder: column(TARGET_Y_REMAINDER),
+    zRemainder: column(TARGET_Z_REMAINDER),
+    radius: column(TARGET_RADIUS),
+  };
 }
 
 export function storePosition(columns: PositionColumns, index: number, p: Position): void {

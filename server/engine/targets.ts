@@ -1,7 +1,16 @@
 import type {Targets} from '../../shared/api.ts';
 import type {Unit} from '../../shared/units.ts';
 import {gridNodes, packGrid, type PackedGrid} from './grid.ts';
-import {POSITION_COLUMNS} from './kernels/layout.ts';
+import {
+  POSITION_COLUMNS,
+  TARGET_RADIUS,
+  TARGET_X,
+  TARGET_X_REMAINDER,
+  TARGET_Y,
+  TARGET_Y_REMAINDER,
+  TARGET_Z,
+  TARGET_Z_REMAINDER,
+} from './kernels/layout.ts';
 import type {Memory} from './memory.ts';
 import {packPath, pathSample, type PackedPath} from './path.ts';
 import {
@@ -48,10 +57,13 @@ export function targetPositions(
 ): void {
   switch (targets.kind) {
     case 'points': {
-      for (let n = 0; n < POSITION_COLUMNS; n++) {
-        const start = n * targets.count + from;
-        out.all[n].set(targets.values.subarray(start, start + count));
-      }
+      copyColumn(targets, TARGET_X, from, count, out.x);
+      copyColumn(targets, TARGET_Y, from, count, out.y);
+      copyColumn(targets, TARGET_Z, from, count, out.z);
+      copyColumn(targets, TARGET_X_REMAINDER, from, count, out.xRemainder);
+      copyColumn(targets, TARGET_Y_REMAINDER, from, count, out.yRemainder);
+      copyColumn(targets, TARGET_Z_REMAINDER, from, count, out.zRemainder);
+      copyColumn(targets, TARGET_RADIUS, from, count, out.radius);
       return;
     }
     case 'grid':
@@ -65,4 +77,15 @@ export function targetPositions(
       }
     }
   }
+}
+
+function copyColumn(
+  {values, count: stride}: PackedPoints,
+  column: number,
+  from: number,
+  count: number,
+  out: Float64Array,
+): void {
+  const start = column * stride + from;
+  for (let i = 0; i < count; i++) out[i] = values[start + i];
 }
