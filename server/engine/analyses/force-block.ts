@@ -57,7 +57,7 @@ export function computeForceBlock(
         const j = start + i;
         sum.compute(i, i + 1, [starts[body], j, j + 1, starts[body + 1]]);
         found.note(sum, start, q);
-        job.out[FORCE_STRIDE * j + 4] = sum.result(RESULT.v)[i];
+        job.out[FORCE_STRIDE * j + 4] = sum.value(RESULT.v, i);
       }
     }
   }
@@ -89,10 +89,12 @@ function addInteraction(
   sum: DirectSum,
 ): void {
   const at = 4 * acting;
-  [RESULT.e, RESULT.e + 1, RESULT.e + 2, RESULT.v].forEach((place, n) => {
-    const result = sum.result(place);
-    for (let i = 0; i < q.length; i++) interactions[at + n] += q[i] * result[i];
-  });
+  for (let i = 0; i < q.length; i++) {
+    interactions[at] += q[i] * sum.value(RESULT.e, i);
+    interactions[at + 1] += q[i] * sum.value(RESULT.e + 1, i);
+    interactions[at + 2] += q[i] * sum.value(RESULT.e + 2, i);
+    interactions[at + 3] += q[i] * sum.value(RESULT.v, i);
+  }
 }
 
 interface Acting {
@@ -116,11 +118,14 @@ function rangesOfOthers(starts: readonly number[], body: number, isByBody: boole
 }
 
 function addTo(out: Float64Array, start: number, count: number, sum: DirectSum): void {
-  [RESULT.e, RESULT.e + 1, RESULT.e + 2, RESULT.v, undefined, RESULT.eBound].forEach((place, n) => {
-    if (place === undefined) return;
-    const result = sum.result(place);
-    for (let i = 0; i < count; i++) out[FORCE_STRIDE * (start + i) + n] += result[i];
-  });
+  for (let i = 0; i < count; i++) {
+    const place = FORCE_STRIDE * (start + i);
+    out[place] += sum.value(RESULT.e, i);
+    out[place + 1] += sum.value(RESULT.e + 1, i);
+    out[place + 2] += sum.value(RESULT.e + 2, i);
+    out[place + 3] += sum.value(RESULT.v, i);
+    out[place + 5] += sum.value(RESULT.eBound, i);
+  }
 }
 
 function chargePositions(

@@ -132,6 +132,11 @@ export class DirectSum {
     return batchColumn(this.#batch, RESULTS_AT + place);
   }
 
+  /** The result of one target. */
+  value(place: number, i: number): number {
+    return this.#batch.values[(RESULTS_AT + place) * this.capacity + i];
+  }
+
   /** Sums at the targets `first` … `last` − 1 of the batch, into the columns of results. */
   compute(first: number, last: number, ranges: Ranges): void {
     this.coincident.clear();
