@@ -2,7 +2,7 @@ import {unitOf} from '../../../shared/units.ts';
 import {ServiceError, type Issue} from '../../errors.ts';
 import {CompensatedSum} from '../compensated-sum.ts';
 import {UNIT_ROUNDOFF} from '../exact.ts';
-import {vectorLength} from '../field-block.ts';
+import {vectorLength} from '../field-columns.ts';
 import {ISSUES_LISTED} from '../limits.ts';
 import {FORCE_STRIDE, type BlockReport, type ForceJob} from '../jobs.ts';
 import {outputScale, scaled, scaledBound, type OutputScale} from '../output-scale.ts';

@@ -48,17 +48,16 @@ export function instantiate(module: KernelModule, memory: KernelMemory): KernelE
 
 /**
  * Memory that cannot grow, so views of it stay valid; pages cost nothing until they are written.
- * Where so much address space cannot be had, half of it is tried.
- *
- * @throws RangeError if hardly any can be had
+ * Where so much address space cannot be had, half of it is tried. Undefined where there is none:
+ * V8 reserves several GiB around it, which a limit on address space may forbid.
  */
-export function kernelMemory(bytes: number): KernelMemory {
+export function kernelMemory(bytes: number): KernelMemory | undefined {
   const pages = Math.ceil(bytes / PAGE);
   try {
     return new WebAssembly.Memory({initial: pages, maximum: pages, shared: true});
   } catch (error) {
     // Not to be had.
-    if (!(error instanceof RangeError) || bytes / 2 < SMALLEST) throw error;
-    return kernelMemory(bytes / 2);
+    if (!(error instanceof RangeError)) throw error;
+    return bytes / 2 < SMALLEST ? undefined : kernelMemory(bytes / 2);
   }
 }

@@ -1,0 +1,80 @@
+import {levels, type Level} from './tables/levels.ts';
+
+/**
+ * What each level reaches and how deep its trees go: fixed for an engine version, so that the same
+ * request gives the same bits everywhere. The errors are those of the far part of V and E, relative
+ * to it in least squares, for charges of random sign spread evenly (tests/engine/multipole.test.ts
+ * holds them); they only choose where to begin, and what was reached is measured in every call.
+ */
+export interface Effort {
+  readonly level: Level;
+  readonly potentialError: number;
+  readonly fieldError: number;
+  /** Pairs of two near boxes up to which they are summed directly. */
+  readonly pairs: number;
+  /** Charges in a box that is not split. */
+  readonly capacity: number;
+}
+
+type Row = readonly [potentialError: number, fieldError: number, pairs: number, capacity: number];
+
+const rows: Readonly<Record<string, Row>> = {
+  a: [9e-4, 8e-3, 6000, 50],
+  b: [2e-4, 1.2e-3, 8000, 64],
+  c: [3e-5, 2.5e-4, 10_000, 64],
+  d: [8e-6, 5.5e-5, 12_000, 80],
+  e: [2.6e-6, 1.6e-5, 13_000, 80],
+  f: [6.8e-7, 3.9e-6, 16_000, 90],
+  g: [8e-8, 8e-7, 12_000, 80],
+  h: [7e-9, 9e-8, 16_000, 90],
+  i: [8e-10, 9.5e-9, 30_000, 120],
+  j: [9e-11, 1.1e-9, 40_000, 140],
+};
+
+export const efforts: readonly Effort[] = levels.map(level => {
+  const [potentialError, fieldError, pairs, capacity] = rows[level.name];
+  return {level, potentialError, fieldError, pairs, capacity};
+});
+
+/** Of what is asked, how much the expected error may be. */
+const MARGIN = 0.7;
+
+/** How much of V and of E comes from far boxes: ‖far‖ ÷ ‖all‖. */
+export interface FarShare {
+  readonly potential: number;
+  readonly field: number;
+}
+
+/** Where nothing is known yet. */
+const usualShare: FarShare = {potential: 1, field: 0.1};
+
+/** The coarsest level that is expected to do; the finest if none is. */
+export function effortFor(
+  tolerance: number,
+  isField: boolean,
+  share: FarShare = usualShare,
+): number {
+  const index = efforts.findIndex(
+    ({potentialError, fieldError}) =>
+      potentialError * share.potential <= MARGIN * tolerance &&
+      (!isField || fieldError * share.field <= MARGIN * tolerance),
+  );
+  return index < 0 ? efforts.length - 1 : index;
+}
+
+/** What comes after an effort that left `error`: the coarsest that is expected to do, if there is one. */
+export function nextEffort(
+  effort: number,
+  tolerance: number,
+  error: {readonly potential: number; readonly field?: number},
+): number | undefined {
+  if (effort + 1 >= efforts.length) return undefined;
+  const own = efforts[effort];
+  const index = efforts.findIndex(
+    ({potentialError, fieldError}, n) =>
+      n > effort &&
+      (error.potential * potentialError) / own.potentialError <= MARGIN * tolerance &&
+      ((error.field ?? 0) * fieldError) / own.fieldError <= MARGIN * tolerance,
+  );
+  return index < 0 ? efforts.length - 1 : index;
+}

@@ -1,0 +1,163 @@
+import type {Arena} from './arena.ts';
+import {Boxes, sortedPoints, type Cube} from './boxes.ts';
+
+/**
+ * Charges in the order of an octree, with nothing that depends on targets: it is kept from call to
+ * call. Plain data; its arrays lie in the heap.
+ */
+export interface SourceTree {
+  readonly root: Cube;
+  readonly count: number;
+  /** [m, m, m, C], sorted; padded by COLUMN_PADDING. */
+  readonly x: Float64Array;
+  readonly y: Float64Array;
+  readonly z: Float64Array;
+  readonly q: Float64Array;
+  /** Which charge each was. */
+  readonly order: Int32Array;
+  readonly boxCount: number;
+  readonly boxes: Float64Array;
+  readonly ranges: Int32Array;
+  readonly children: Int32Array;
+  readonly octants: Int32Array;
+  /** First box of every level, and the number of boxes. */
+  readonly levels: readonly number[];
+  /** Boxes without children. */
+  readonly leaves: Int32Array;
+  /**
+   * Charges at one place that cannot be told apart are summed: the first carries all of them, and
+   * stands for as many. 1 elsewhere.
+   */
+  readonly members: Int32Array;
+  /** [C] the largest, of the sums too */
+  readonly largestCharge: number;
+}
+
+/** Numbers that vectors may read beyond the last point, and boxes beyond the last box. */
+export const COLUMN_PADDING = 8;
+export const BOX_PADDING = 4;
+
+export interface Positions {
+  readonly count: number;
+  readonly x: Float64Array;
+  readonly y: Float64Array;
+  readonly z: Float64Array;
+}
+
+/** @param capacity charges that a box may hold without being split */
+export function sourceTree(
+  arena: Arena,
+  charges: Positions & {readonly q: Float64Array},
+  root: Cube,
+  capacity: number,
+  smallestBox = 0,
+): SourceTree {
+  const {count} = charges;
+  const column = (values: Float64Array): Float64Array => {
+    const out = arena.doubles(count + COLUMN_PADDING);
+    out.set(values.subarray(0, count));
+    return out;
+  };
+  const [x, y, z, q] = [charges.x, charges.y, charges.z, charges.q].map(column);
+  const order = arena.integers(count);
+  for (let i = 0; i < count; i++) order[i] = i;
+  const members = arena.integers(count).fill(1);
+  const points = sortedPoints([x, y, z, q], order, count);
+  const boxes = new Boxes(root, 0, count);
+  const levels = [0, 1];
+  const leaves: number[] = [];
+  for (let box = 0; box < boxes.count; box++) {
+    if (box === levels[levels.length - 1]) levels.push(boxes.count);
+    const held = boxes.pointsIn(box);
+    if (held > capacity && boxes.isOnePlace(box, points)) mergeAlike(boxes, box, {q, members});
+    else if (held > capacity && boxes.sizeOf(box) >= 2 * smallestBox && boxes.isDivisible(box)) {
+      boxes.split(box, points);
+      continue;
+    }
+    leaves.push(box);
+  }
+  let largestCharge = 0;
+  for (let i = 0; i < count; i++) largestCharge = Math.max(largestCharge, Math.abs(q[i]));
+  const boxArray = arena.doubles(4 * (boxes.count + BOX_PADDING));
+  boxArray.set(boxes.geometry.values);
+  return {
+    root,
+    count,
+    x,
+    y,
+    z,
+    q,
+    order,
+    boxCount: boxes.count,
+    boxes: boxArray,
+    ranges: arena.keep(boxes.ranges.values),
+    children: arena.keep(boxes.children.values),
+    octants: arena.keep(boxes.octants.values),
+    levels,
+    leaves: arena.keep(leaves),
+    members,
+    largestCharge,
+  };
+}
+
+/** Lets one charge stand for all of a box, which are at one place. */
+function mergeAlike(
+  boxes: Boxes,
+  box: number,
+  {q, members}: {q: Float64Array; members: Int32Array},
+): void {
+  const from = boxes.ranges.at(2 * box);
+  const to = boxes.ranges.at(2 * box + 1);
+  let sum = 0;
+  let rest = 0;
+  for (let i = from; i < to; i++) {
+    const after = sum + q[i];
+    const second = after - sum;
+    rest += sum - (after - second) + (q[i] - second);
+    sum = after;
+    q[i] = 0;
+  }
+  q[from] = sum + rest;
+  members[from] = to - from;
+  boxes.ranges.set(2 * box + 1, from + 1);
+}
+
+/** The smallest cube around points, widened by twos until it holds `others` as well. */
+export function rootCube(points: Positions, others: Bounds): Cube {
+  const own = boundsOf(points);
+  const [x, y, z] = [0, 1, 2].map(axis => (own.low[axis] + own.high[axis]) / 2);
+  const extent = Math.max(...[0, 1, 2].map(axis => own.high[axis] - own.low[axis]));
+  const centre = [x, y, z];
+  const furthest = Math.max(
+    ...[0, 1, 2].map(axis =>
+      Math.max(others.high[axis] - centre[axis], centre[axis] - others.low[axis]),
+    ),
+  );
+  // A little more, so that rounding leaves nothing outside.
+  let size = extent * (1 + 2 ** -20);
+  const needed = 2 * furthest * (1 + 2 ** -20);
+  if (size === 0) size = needed > 0 ? needed : 1;
+  while (size < needed) size *= 2;
+  return {x, y, z, size};
+}
+
+export interface Bounds {
+  readonly low: readonly number[];
+  readonly high: readonly number[];
+}
+
+export function boundsOf({count, x, y, z}: Positions): Bounds {
+  const low = [Infinity, Infinity, Infinity];
+  const high = [-Infinity, -Infinity, -Infinity];
+  for (const [axis, values] of [x, y, z].entries()) {
+    let least = Infinity;
+    let most = -Infinity;
+    for (let i = 0; i < count; i++) {
+      if (values[i] < least) least = values[i];
+      if (values[i] > most) most = values[i];
+    }
+    low[axis] = least;
+    high[axis] = most;
+  }
+  return {low, high};
+}
