@@ -6,9 +6,7 @@ import type {Memory} from './memory.ts';
 
 /** What threads are given of a heap. */
 export interface SharedHeap {
-  readonly buffer: SharedArrayBuffer;
-  /** What the buffer belongs to, for the kernels; undefined where there is no such memory. */
-  readonly memory: KernelMemory | undefined;
+  readonly memory: KernelMemory;
   readonly table: Int32Array;
 }
 
@@ -25,17 +23,12 @@ const ENTRIES = 3;
 const ENTRY = 3;
 const MOST_ENTRIES = 4096;
 
-/**
- * @param bytes of address space; fewer if they cannot be had
- * @param makeMemory of the kernels; where that makes none, the heap is without them
- */
-export function createHeap(bytes: number, makeMemory = kernelMemory): SharedHeap {
-  const memory = makeMemory(bytes);
-  const buffer = memory?.buffer ?? new SharedArrayBuffer(bytes);
+/** @param bytes of address space; fewer if they cannot be had */
+export function createHeap(bytes: number, memory = kernelMemory(bytes)): SharedHeap {
   const table = new Int32Array(new SharedArrayBuffer(4 * (ENTRIES + ENTRY * MOST_ENTRIES)));
   table[USED] = STATIC_BYTES / LINE;
   table[END] = ENTRIES;
-  return {buffer, memory, table};
+  return {memory, table};
 }
 
 /**
@@ -54,16 +47,16 @@ export class Heap {
   constructor(shared: SharedHeap) {
     this.shared = shared;
     this.#table = shared.table;
-    this.#numbers = new Float64Array(shared.buffer);
+    this.#numbers = new Float64Array(shared.memory.buffer);
   }
 
-  get memory(): KernelMemory | undefined {
+  get memory(): KernelMemory {
     return this.shared.memory;
   }
 
   /** [bytes] */
   get capacity(): number {
-    return this.shared.buffer.byteLength;
+    return this.memory.buffer.byteLength;
   }
 
   /** [bytes] handed out at the moment */

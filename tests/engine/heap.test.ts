@@ -5,6 +5,7 @@ import {afterAll, expect, test} from 'vitest';
 import type {Operation} from '../../shared/api.ts';
 import {ServiceError} from '../../server/errors.ts';
 import {createHeap, Heap} from '../../server/engine/heap.ts';
+import {instantiate, loadKernels, plainMemory} from '../../server/engine/kernels/load.ts';
 import {Lease} from '../../server/engine/lease.ts';
 import {createEngine, type Engine, type EngineOptions} from '../../server/engine/pool.ts';
 import {randomNumbers} from './random.ts';
@@ -70,6 +71,14 @@ test('a heap that has no more entries is full, and says so', () => {
   heap.release(1);
   expect(heap.allocated).toBe(0);
   heap.allocate(1, 1);
+});
+
+test('where kernels can have no memory there is a heap all the same, without them', () => {
+  const heap = new Heap(createHeap(16 * MIB, plainMemory(16 * MIB)));
+  const module = loadKernels();
+  expect(module && instantiate(module, newHeap().memory)).toBeDefined();
+  expect(module && instantiate(module, heap.memory)).toBeUndefined();
+  expect(heap.memoryOf(1)(1000).fill(1).byteOffset).toBe(PAGE);
 });
 
 test('a lock that a dead thread left closed is opened, and one that a living thread holds is not', () => {

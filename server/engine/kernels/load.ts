@@ -5,8 +5,8 @@ import type {DirectExports} from './compiled-kernels.ts';
 
 // The only file that touches WebAssembly.
 
-/** Memory of the kernels, which all threads share. */
-export type KernelMemory = WebAssembly.Memory;
+/** Memory that all threads share: of the kernels, or plain where they can have none. */
+export type KernelMemory = WebAssembly.Memory | {readonly buffer: SharedArrayBuffer};
 export type KernelModule = WebAssembly.Module;
 /** What the module exports; each family of kernels adds its own. */
 export type KernelExports = DirectExports & {readonly version: () => number};
@@ -38,26 +38,32 @@ export function loadKernels(places: readonly string[] = PLACES): KernelModule | 
   }
 }
 
-/** The kernels of this thread. */
+/** The kernels of this thread; undefined where memory is plain, or they are of another build. */
 export function instantiate(module: KernelModule, memory: KernelMemory): KernelExports | undefined {
+  if (!(memory instanceof WebAssembly.Memory)) return undefined;
   // The module is ours: its exports are what the sources say.
   const exports = new WebAssembly.Instance(module, {env: {memory}}).exports as KernelExports;
-  // Built from other sources.
   return exports.version() === VERSION ? exports : undefined;
 }
 
 /**
  * Memory that cannot grow, so views of it stay valid; pages cost nothing until they are written.
- * Where so much address space cannot be had, half of it is tried. Undefined where there is none:
- * V8 reserves several GiB around it, which a limit on address space may forbid.
+ * Where so much address space cannot be had, half of it is tried. V8 reserves several GiB around it;
+ * where a limit on address space forbids that, the memory is plain and kernels do without.
  */
-export function kernelMemory(bytes: number): KernelMemory | undefined {
-  const pages = Math.ceil(bytes / PAGE);
-  try {
-    return new WebAssembly.Memory({initial: pages, maximum: pages, shared: true});
-  } catch (error) {
-    // Not to be had.
-    if (!(error instanceof RangeError)) throw error;
-    return bytes / 2 < SMALLEST ? undefined : kernelMemory(bytes / 2);
+export function kernelMemory(bytes: number): KernelMemory {
+  for (let size = bytes; size >= SMALLEST; size /= 2) {
+    const pages = Math.ceil(size / PAGE);
+    try {
+      return new WebAssembly.Memory({initial: pages, maximum: pages, shared: true});
+    } catch (error) {
+      // Not to be had.
+      if (!(error instanceof RangeError)) throw error;
+    }
   }
+  return plainMemory(bytes);
 }
+
+export const plainMemory = (bytes: number): KernelMemory => ({
+  buffer: new SharedArrayBuffer(bytes),
+});
