@@ -17,7 +17,7 @@ import type {Workplace} from './workplace.ts';
 
 const {heap: sharedHeap, kernels} = workerData as ThreadData;
 const heap = new Heap(sharedHeap);
-const kernelExports = kernels && heap.memory && instantiate(kernels, heap.memory);
+const kernelExports = kernels && instantiate(kernels, heap.memory);
 const compiled = kernelExports && compiledKernels(kernelExports);
 
 const workplaceOf = (tag: number): Workplace => ({
