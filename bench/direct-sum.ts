@@ -2,7 +2,7 @@ import type {Grid} from '../shared/api.ts';
 import {defaultLimits} from '../server/engine/limits.ts';
 import {blockCount, computeBlock} from '../server/engine/evaluate.ts';
 import {createHeap, Heap} from '../server/engine/heap.ts';
-import type {Job} from '../server/engine/jobs.ts';
+import type {FieldJob} from '../server/engine/jobs.ts';
 import {compiledKernels} from '../server/engine/kernels/compiled-kernels.ts';
 import {instantiate, loadKernels} from '../server/engine/kernels/load.ts';
 import {plainKernels} from '../server/engine/kernels/plain-kernels.ts';
@@ -96,7 +96,7 @@ async function evaluationAgainstKernel(): Promise<void> {
   printRatio('1e3 charges, grid of 100³: evaluation ÷ kernel', ratio, {atMost: 1.05});
 }
 
-function evaluate(job: Job): void {
+function evaluate(job: FieldJob): void {
   const scratch = 2;
   for (let block = 0; block < blockCount(job); block++) {
     computeBlock(job, block, () => false, {memory: heap.memoryOf(scratch), compiled});
@@ -105,7 +105,7 @@ function evaluate(job: Job): void {
   new Float64Array(job.out.length).set(job.out);
 }
 
-function gridJob(): Job & {kind: 'field'} {
+function gridJob(): FieldJob {
   const column = (): number[] => Array.from({length: 1000}, random);
   const bodies = [{charges: {x: column(), y: column(), z: column(), charge: column()}}];
   const grid: Grid = {

@@ -27,6 +27,8 @@ export interface Limits {
   readonly requestRows: number;
   readonly queuedCalls: number;
   readonly computeMilliseconds: number;
+  /** Prepared forms (packed bodies, trees, tables) that are kept from call to call [bytes]. */
+  readonly keptBytes: number;
   readonly heapBytes: number;
 }
 
@@ -71,6 +73,7 @@ export const defaultLimits: Limits = {
   requestRows: 1e5,
   queuedCalls: 200,
   computeMilliseconds: 30_000,
+  keptBytes: 512 * MIB,
   heapBytes: 2048 * MIB,
 };
 

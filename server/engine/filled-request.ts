@@ -35,7 +35,7 @@ export interface FilledBody {
  */
 export interface FilledRequest {
   readonly about?: readonly number[];
-  readonly accuracy?: {readonly bounds: boolean};
+  readonly accuracy?: {readonly bounds: boolean; readonly tolerance?: number};
   readonly bodies: readonly FilledBody[];
   readonly coincidenceDistance?: number;
   readonly include?: readonly Inclusion[];
@@ -81,7 +81,7 @@ export function filledRequest(operation: Operation, request: ComputeRequest): Fi
   const include = operation === 'forces' ? (given.include ?? []) : undefined;
   return {
     ...(about && {about}),
-    ...(operation !== 'moments' && {accuracy: {bounds: given.accuracy?.bounds ?? false}}),
+    ...(operation !== 'moments' && {accuracy: accuracy(given.accuracy)}),
     bodies: given.bodies.map((body, index) => ({
       charges: columns(body.charges),
       id: body.id ?? `body-${index}`,
@@ -99,6 +99,14 @@ export function filledRequest(operation: Operation, request: ComputeRequest): Fi
     units: filledUnits(given.units, dimensionsOf(operation, quantities ?? [])),
   };
 }
+
+const accuracy = ({
+  bounds = false,
+  tolerance,
+}: NonNullable<FieldRequest['accuracy']> = {}): FilledRequest['accuracy'] => ({
+  bounds,
+  ...(tolerance !== undefined && {tolerance}),
+});
 
 const columns = ({charge, x, y, z}: Columns): Columns => ({charge, x, y, z});
 

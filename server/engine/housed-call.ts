@@ -1,5 +1,6 @@
 import type {ForceJob, FieldJob} from './jobs.ts';
 import type {Memory} from './memory.ts';
+import type {MultipoleJob} from './multipole/multipole-job.ts';
 import type {PackedCall} from './pack.ts';
 import {copyColumns} from './sources/charge-columns.ts';
 import type {PackedTargets} from './targets.ts';
@@ -13,10 +14,17 @@ export function housedCall({header, job}: PackedCall, memory: Memory): PackedCal
       const probes = job.probes && copyColumns(job.probes, memory);
       return {header, job: {...housed(job, memory), ...(probes && {probes})}};
     }
+    case 'multipole':
+      return {header, job: housedMultipole(job, memory)};
     case 'moment':
       // Computed and written where it is read.
       return {header, job};
   }
+}
+
+function housedMultipole(job: MultipoleJob, memory: Memory): MultipoleJob {
+  const field = {...housed(job.field, memory), targets: housedTargets(job.field.targets, memory)};
+  return {...job, field};
 }
 
 function housed<J extends FieldJob | ForceJob>(job: J, memory: Memory): J {

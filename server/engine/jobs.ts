@@ -1,5 +1,6 @@
 import type {OnCoincidence} from '../../shared/api.ts';
 import type {BoundKind, SumKind} from './methods/direct-sum.ts';
+import type {MultipoleJob} from './multipole/multipole-job.ts';
 import type {ChargeColumns} from './sources/charge-columns.ts';
 import type {PackedTargets} from './targets.ts';
 
@@ -38,6 +39,8 @@ export interface FieldJob extends Blocks {
   /** [m] */
   readonly coincidenceDistance: number;
   readonly onCoincidence: OnCoincidence;
+  /** What error was allowed, where that was said. */
+  readonly tolerance?: number;
 }
 
 export const FIELD_COLUMNS = [
@@ -102,7 +105,7 @@ export interface MomentJob extends Blocks {
   readonly about: readonly number[];
 }
 
-export type Job = FieldJob | ForceJob | MomentJob;
+export type Job = FieldJob | ForceJob | MomentJob | MultipoleJob;
 
 /** What a block has to say besides its results. */
 export interface BlockReport {

@@ -11,6 +11,10 @@ export interface EngineLimits {
   readonly requestRows: number;
   /** [ms] from the first block of a call to its end. */
   readonly computeMilliseconds: number;
+  /** Whether there are kernels and tables for the multipole method. */
+  readonly hasMultipole: boolean;
+  /** [bytes] of prepared forms that are kept from call to call. */
+  readonly keptBytes: number;
   /** [bytes] of address space that all calls are computed in; they cost nothing until used. */
   readonly heapBytes: number;
 }
@@ -23,6 +27,8 @@ export const defaultLimits: EngineLimits = {
   answerRows: 2e5,
   requestRows: 1e5,
   computeMilliseconds: 30_000,
+  hasMultipole: true,
+  keptBytes: 2 ** 29,
   heapBytes: 2 ** 31,
 };
 

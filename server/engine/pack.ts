@@ -2,12 +2,14 @@ import {unitOf} from '../../shared/units.ts';
 import {answerHeader, type AnswerHeader} from './answers/header.ts';
 import {totalOf} from './compensated-sum.ts';
 import {symbolOf, type FilledRequest} from './filled-request.ts';
-import {FIELD_COLUMNS, FORCE_STRIDE, type FieldColumn, type Job} from './jobs.ts';
+import type {Forms} from './forms.ts';
+import {FIELD_COLUMNS, FORCE_STRIDE, type FieldColumn, type FieldJob, type Job} from './jobs.ts';
 import {PAIR_WEIGHT} from './limits.ts';
 import type {Memory} from './memory.ts';
 import type {BoundKind, SumKind} from './methods/direct-sum.ts';
 import {packAssembly, packProbes, type PackedAssembly} from './pack-charges.ts';
 import {packMoments} from './pack-moments.ts';
+import {packMultipole} from './pack-multipole.ts';
 import type {Plan} from './plan.ts';
 import {convert, position} from './positions.ts';
 import {packTargets} from './targets.ts';
@@ -25,13 +27,14 @@ const PAIRS_WITH_ERRORS = 5e7;
 const PER_BLOCK: Record<BoundKind, number> = {none: 8e6, errors: 6e5, magnitudes: 2.5e6};
 const TARGETS_PER_BLOCK = 16_384;
 
-export function pack(plan: Plan, memory: Memory): PackedCall {
+/** @param forms where packed bodies are kept */
+export function pack(plan: Plan, memory: Memory, forms?: Forms): PackedCall {
   switch (plan.operation) {
     case 'potentials':
     case 'fields':
-      return packFields(plan, memory);
+      return packFields(plan, memory, forms);
     case 'forces':
-      return packForces(plan, memory);
+      return packForces(plan, memory, forms);
     case 'moments':
       return packMoments(plan, memory);
   }
@@ -43,7 +46,7 @@ export function boundKind(hasBounds: boolean, evaluations: number): BoundKind {
   return evaluations <= PAIRS_WITH_ERRORS ? 'errors' : 'magnitudes';
 }
 
-function results(length: number, memory: Memory): Pick<Job, 'out' | 'outAddress'> {
+function results(length: number, memory: Memory): Pick<FieldJob, 'out' | 'outAddress'> {
   const out = memory(length);
   return {out, outAddress: memory.addressOf(out)};
 }
@@ -59,9 +62,9 @@ function appendBlocks(blocks: number[], from: number, to: number, size: number):
   for (let start = from; start < to; start += size) blocks.push(start);
 }
 
-function packFields(plan: Plan, memory: Memory): PackedCall {
+function packFields(plan: Plan, memory: Memory, forms?: Forms): PackedCall {
   const {request, sources, targets: count} = plan;
-  const assembly = packAssembly(request, memory);
+  const assembly = packAssembly(request, memory, forms);
   const length = unitOf('length', symbolOf(request, 'length'));
   if (!request.targets) throw new RangeError('expected targets');
   const columns = fieldColumns(request);
@@ -69,29 +72,31 @@ function packFields(plan: Plan, memory: Memory): PackedCall {
   const blocks: number[] = [];
   appendBlocks(blocks, 0, count, targetsPerBlock(sources, sumKind(request), bounds));
   blocks.push(count);
+  const field: FieldJob = {
+    kind: 'field',
+    charges: assembly.charges,
+    starts: assembly.starts,
+    targets: packTargets(request.targets, length, memory),
+    count,
+    sum: sumKind(request),
+    bounds,
+    columns,
+    relativePermittivity: request.medium?.relativePermittivity ?? 1,
+    symbols: {
+      charge: symbolOf(request, 'charge'),
+      potential: symbolOf(request, 'potential'),
+      field: symbolOf(request, 'field'),
+      fieldGradient: symbolOf(request, 'fieldGradient'),
+    },
+    coincidenceDistance: length.toSI(request.coincidenceDistance ?? 0),
+    onCoincidence: request.onCoincidence ?? 'mask',
+    blocks,
+    ...results(columns.length * count, memory),
+    ...(request.accuracy?.tolerance !== undefined && {tolerance: request.accuracy.tolerance}),
+  };
   return {
     header: answerHeader(plan, assembly.placements),
-    job: {
-      kind: 'field',
-      charges: assembly.charges,
-      starts: assembly.starts,
-      targets: packTargets(request.targets, length, memory),
-      count,
-      sum: sumKind(request),
-      bounds,
-      columns,
-      relativePermittivity: request.medium?.relativePermittivity ?? 1,
-      symbols: {
-        charge: symbolOf(request, 'charge'),
-        potential: symbolOf(request, 'potential'),
-        field: symbolOf(request, 'field'),
-        fieldGradient: symbolOf(request, 'fieldGradient'),
-      },
-      coincidenceDistance: length.toSI(request.coincidenceDistance ?? 0),
-      onCoincidence: request.onCoincidence ?? 'mask',
-      blocks,
-      ...results(columns.length * count, memory),
-    },
+    job: plan.method === 'multipole' ? packMultipole(plan, field, assembly, memory) : field,
   };
 }
 
@@ -131,9 +136,9 @@ function fieldColumns({quantities = [], accuracy}: FilledRequest): FieldColumn[]
   return FIELD_COLUMNS.filter(isAnswered);
 }
 
-function packForces(plan: Plan, memory: Memory): PackedCall {
+function packForces(plan: Plan, memory: Memory, forms?: Forms): PackedCall {
   const {request, sources, work, targets, hasInteractions} = plan;
-  const assembly = packAssembly(request, memory);
+  const assembly = packAssembly(request, memory, forms);
   const probes = packProbes(request, memory);
   const include = request.include ?? [];
   const hasBounds = request.accuracy?.bounds === true;

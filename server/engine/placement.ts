@@ -36,3 +36,10 @@ export function packPlacement(placement: Placement | undefined, unit: Unit): Pac
   const rotation = rotate ? rotationAbout(rotate.axis, rotate.degrees) : UNTURNED;
   return {rotation, shift, isIdentity: !rotate && !translate};
 }
+
+/** Where nothing moves. */
+export const UNPLACED: PackedPlacement = {
+  rotation: UNTURNED,
+  shift: position(),
+  isIdentity: true,
+};

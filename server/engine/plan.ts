@@ -3,7 +3,9 @@ import {ServiceError} from '../errors.ts';
 import {checkRequest} from './checks.ts';
 import {filledRequest, type ComputeRequest, type FilledRequest} from './filled-request.ts';
 import {gridCount} from './grid.ts';
+import {MULTIPOLE_PAIRS_PER_POINT} from '../../shared/pricing.ts';
 import {Issues} from './issues.ts';
+import {directMilliseconds, multipoleMilliseconds} from './multipole/cost-model.ts';
 import {
   BODIES_WITH_INTERACTIONS,
   defaultLimits,
@@ -30,8 +32,12 @@ export interface Plan {
   readonly targets: number;
   readonly hasInteractions: boolean;
   readonly route: 'inline' | 'worker';
-  readonly method: 'direct';
+  readonly method: Method;
+  /** Pairs that one call may sum directly. */
+  readonly mostPairs: number;
 }
+
+export type Method = 'direct' | 'multipole';
 
 /**
  * Checks what a request means, fills in its defaults and counts it.
@@ -65,11 +71,17 @@ export function plan(
     );
   }
 
-  const shape = shapeOf(operation, filled, sizes, sources, probes);
-  checkSize(shape.work, shape.rows, limits);
+  const direct = shapeOf(operation, filled, sizes, sources, probes);
+  const method = methodFor(filled, sources, direct, limits);
+  const shape =
+    method === 'multipole'
+      ? {...direct, work: MULTIPOLE_PAIRS_PER_POINT * (sources + direct.targets)}
+      : direct;
+  checkSize(filled, shape.work, shape.rows, limits);
   const pairs = Math.max(MINIMUM_PAIRS, shape.work);
   const effort = filled.accuracy?.bounds ? BOUND_EFFORT * shape.work : shape.work;
   const isInline =
+    method === 'direct' &&
     Math.max(pairs, effort) <= limits.inlinePairs &&
     shape.rows <= limits.inlineRows &&
     bytes <= limits.inlineBytes;
@@ -79,9 +91,32 @@ export function plan(
     pairs,
     sources,
     route: isInline ? 'inline' : 'worker',
-    method: 'direct',
+    method,
+    mostPairs: limits.synchronousPairs,
     ...shape,
   };
+}
+
+/** The quicker one, where the request leaves the choice; from its shape alone. */
+function methodFor(
+  {accuracy, quantities = [], targets}: FilledRequest,
+  sources: number,
+  {work, targets: count}: Shape,
+  limits: EngineLimits,
+): Method {
+  const tolerance = accuracy?.tolerance;
+  const hasChoice =
+    limits.hasMultipole &&
+    targets !== undefined &&
+    tolerance !== undefined &&
+    !accuracy?.bounds &&
+    !quantities.includes('fieldGradient');
+  if (!hasChoice) return 'direct';
+  const isField = quantities.includes('field') || quantities.includes('magnitude');
+  const isQuicker =
+    multipoleMilliseconds(sources, count, tolerance, isField) <
+    directMilliseconds(sources, count, isField);
+  return isQuicker || work > limits.synchronousPairs ? 'multipole' : 'direct';
 }
 
 type Shape = Pick<Plan, 'work' | 'rows' | 'targets' | 'hasInteractions'>;
@@ -125,11 +160,18 @@ function targetCount({targets}: FilledRequest): number {
   return targets?.path?.samples ?? targets?.points?.x.length ?? 0;
 }
 
-function checkSize(work: number, rows: number, limits: EngineLimits): void {
+function checkSize(
+  {accuracy, targets}: FilledRequest,
+  work: number,
+  rows: number,
+  limits: EngineLimits,
+): void {
   if (work > limits.synchronousPairs) {
+    const isOpen = targets && limits.hasMultipole && accuracy?.tolerance === undefined;
+    const hint = isOpen ? 'state accuracy.tolerance, which costs large sums far less, or ' : '';
     throw new ServiceError(
       'too-large-for-synchronous',
-      `The call takes ${work} pairs and one call computes up to ${limits.synchronousPairs}; split the targets over several calls.`,
+      `The call takes ${work} pairs and one call computes up to ${limits.synchronousPairs}; ${hint}split the targets over several calls.`,
     );
   }
   if (rows > limits.answerRows) {

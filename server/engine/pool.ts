@@ -2,8 +2,10 @@ import type {Estimate, Operation} from '../../shared/api.ts';
 import {ServiceError} from '../errors.ts';
 import {estimateOf} from './estimate.ts';
 import {createHeap, Heap} from './heap.ts';
-import {loadKernels, type KernelModule} from './kernels/load.ts';
+import {KeptForms} from './kept-forms.ts';
+import {instantiate, loadKernels, type KernelModule} from './kernels/load.ts';
 import {defaultLimits, type EngineLimits} from './limits.ts';
+import {hasTables} from './multipole/find-table.ts';
 import {planBody} from './prepare.ts';
 import {runWhole} from './run-call.ts';
 import {Scheduler} from './scheduler.ts';
@@ -56,8 +58,8 @@ export interface Engine {
   warmUp(): Promise<void>;
   /** Calls in the threads or waiting for them, and how many there may be. */
   load(): {readonly queued: number; readonly capacity: number};
-  /** [bytes] of the heap that calls hold at the moment */
-  memory(): {readonly allocated: number; readonly capacity: number};
+  /** [bytes] of the heap that calls and kept forms hold at the moment, and the latter alone */
+  memory(): {readonly allocated: number; readonly kept: number; readonly capacity: number};
   close(): Promise<void>;
 }
 
@@ -69,10 +71,13 @@ export function createEngine({
   maxQueue = 200,
   kernels = loadKernels(),
 }: EngineOptions): Engine {
-  const limits: EngineLimits = {...defaultLimits, ...given};
-  const heap = new Heap(createHeap(limits.heapBytes));
+  const wanted: EngineLimits = {...defaultLimits, ...given};
+  const heap = new Heap(createHeap(wanted.heapBytes));
+  const isCompiled = kernels ? instantiate(kernels, heap.memory) !== undefined : false;
+  const limits = {...wanted, hasMultipole: wanted.hasMultipole && isCompiled && hasTables()};
+  const kept = new KeptForms(heap, limits.keptBytes);
   const threads = new Threads(count, heap, kernels ?? undefined);
-  const scheduler = new Scheduler(threads, heap, maxQueue, limits.computeMilliseconds);
+  const scheduler = new Scheduler(threads, heap, kept, maxQueue, limits.computeMilliseconds);
 
   const preparedOf = (call: PreparedCall): Prepared => {
     const {operation, pairs, rows, route} = call.plan;
@@ -80,7 +85,7 @@ export function createEngine({
   };
   /** A thread gets its own copy, since what is moved to it is gone here. */
   const read = (operation: Operation | 'estimates', body: Uint8Array): Promise<PreparedCall> =>
-    scheduler.single({type: 'prepare', operation, bytes: new Uint8Array(body), limits});
+    scheduler.prepare(operation, new Uint8Array(body), limits);
 
   return {
     prepare(operation, body) {
@@ -109,7 +114,7 @@ export function createEngine({
       await Promise.all(Array.from({length: count}, () => threads.do({type: 'warm'})));
     },
     load: () => scheduler.load,
-    memory: () => ({allocated: heap.allocated, capacity: heap.capacity}),
+    memory: () => ({allocated: heap.allocated, kept: kept.bytes, capacity: heap.capacity}),
     close: () => threads.close(),
   };
 }

@@ -22,6 +22,6 @@ export function runWhole(
     reports.push(computeBlock(job, block, stop, workplace));
   }
   const timing = {queuedMilliseconds, computedMilliseconds: performance.now() - start};
-  const bytes = stop() ? undefined : writeAnswer(header, job, reports, timing, stop);
+  const bytes = stop() ? undefined : writeAnswer(header, job, reports, timing, stop, workplace);
   return {bytes, timing};
 }

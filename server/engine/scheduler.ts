@@ -1,23 +1,17 @@
+import type {Operation} from '../../shared/api.ts';
 import {ServiceError} from '../errors.ts';
-import {blockCount} from './evaluate.ts';
+import {BlockCall, guarded, type Call, type Run} from './block-call.ts';
+import {CallForms} from './call-forms.ts';
 import type {Heap} from './heap.ts';
-import type {BlockReport} from './jobs.ts';
+import type {KeptForms} from './kept-forms.ts';
 import {Lease} from './lease.ts';
-import type {PackedCall} from './pack.ts';
-import type {PreparedCall, Task, WrittenAnswer} from './tasks.ts';
+import type {EngineLimits} from './limits.ts';
+import type {PreparedCall, WrittenAnswer} from './tasks.ts';
 import type {Threads} from './threads.ts';
 
 /** Work up to here is one task: hops between threads cost more than what sharing it would save. */
 const WHOLE_WORK = 4e6;
 const WHOLE_WORK_WITH_BOUNDS = 5e5;
-
-/** A call on its way through the threads. */
-interface Call {
-  /** The next task, or undefined while the tasks that are out must come back first. */
-  next(): (() => Promise<void>) | undefined;
-  startedAt: number | undefined;
-  readonly onStart: () => void;
-}
 
 /**
  * Gives the threads their tasks. Calls take turns, block by block, so that a small one never waits
@@ -27,6 +21,7 @@ interface Call {
 export class Scheduler {
   readonly #threads: Threads;
   readonly #heap: Heap;
+  readonly #kept: KeptForms;
   readonly #capacity: number;
   readonly #computeMilliseconds: number;
   /** Whose turn it is stands first. */
@@ -35,9 +30,16 @@ export class Scheduler {
   #admitted = 0;
   #lastTag = 0;
 
-  constructor(threads: Threads, heap: Heap, capacity: number, computeMilliseconds: number) {
+  constructor(
+    threads: Threads,
+    heap: Heap,
+    kept: KeptForms,
+    capacity: number,
+    computeMilliseconds: number,
+  ) {
     this.#threads = threads;
     this.#heap = heap;
+    this.#kept = kept;
     this.#capacity = capacity;
     this.#computeMilliseconds = computeMilliseconds;
   }
@@ -47,11 +49,15 @@ export class Scheduler {
   }
 
   /**
-   * Does one task in its turn.
+   * Reads, checks and packs a body in its turn.
    *
-   * @throws ServiceError overloaded, or what the task refuses
+   * @throws ServiceError overloaded, or what the body is refused for
    */
-  async single(task: Task & {type: 'prepare'}): Promise<PreparedCall> {
+  async prepare(
+    operation: Operation | 'estimates',
+    bytes: Uint8Array,
+    limits: EngineLimits,
+  ): Promise<PreparedCall> {
     return this.#admit((resolve, reject) => {
       let isOut = false;
       return {
@@ -61,11 +67,17 @@ export class Scheduler {
           if (isOut) return undefined;
           isOut = true;
           return async () => {
+            const hold = this.#kept.hold(['columns:']);
             try {
-              resolve(await this.#threads.do(task, [task.bytes.buffer as ArrayBuffer]));
+              const task = {type: 'prepare', operation, bytes, limits, forms: hold.known} as const;
+              const prepared = await this.#threads.do(task, [bytes.buffer as ArrayBuffer]);
+              if (prepared.forms) hold.add(prepared.forms);
+              resolve(prepared);
             } catch (error) {
               // Refusals and bugs alike belong to the caller.
               reject(error);
+            } finally {
+              hold.release();
             }
           };
         },
@@ -79,12 +91,17 @@ export class Scheduler {
    * @throws ServiceError overloaded, time-out, or what the call is refused for; the reason of
    *   `signal` once that is aborted
    */
-  async run({plan, call}: PreparedCall, signal: AbortSignal): Promise<Required<WrittenAnswer>> {
+  async run(prepared: PreparedCall, signal: AbortSignal): Promise<Required<WrittenAnswer>> {
+    const {plan} = prepared;
     signal.throwIfAborted();
     const flag = new Int32Array(new SharedArrayBuffer(Int32Array.BYTES_PER_ELEMENT));
     const queuedAt = performance.now();
     const tag = this.#newTag();
-    const lease = new Lease(() => this.#heap.release(tag));
+    const forms = new CallForms(this.#kept, prepared.forms);
+    const lease = new Lease(() => {
+      this.#heap.release(tag);
+      forms.release();
+    });
     let timer: NodeJS.Timeout | undefined;
     let onAbort: (() => void) | undefined;
     try {
@@ -104,9 +121,13 @@ export class Scheduler {
           if (bytes) resolve({bytes, timing});
         };
         const hasBounds = plan.request.accuracy?.bounds === true;
-        return plan.work <= (hasBounds ? WHOLE_WORK_WITH_BOUNDS : WHOLE_WORK)
-          ? this.#wholeCall({plan, call}, tag, lease, flag, queuedAt, onStart, finish, end)
-          : this.#blockCall({plan, call}, tag, lease, flag, queuedAt, onStart, finish, end);
+        const isWhole =
+          plan.method === 'direct' &&
+          plan.work <= (hasBounds ? WHOLE_WORK_WITH_BOUNDS : WHOLE_WORK);
+        const run = {prepared, tag, lease, forms, flag, queuedAt, onStart, finish, fail: end};
+        return isWhole
+          ? this.#wholeCall(run)
+          : new BlockCall(run, this.#threads, task => this.#withScratch(task));
       });
     } finally {
       clearTimeout(timer);
@@ -115,84 +136,24 @@ export class Scheduler {
     }
   }
 
-  #wholeCall(
-    {plan, call}: PreparedCall,
-    tag: number,
-    lease: Lease,
-    flag: Int32Array,
-    queuedAt: number,
-    onStart: () => void,
-    finish: (answer: WrittenAnswer) => void,
-    fail: (reason: unknown) => void,
-  ): Call {
+  #wholeCall(run: Run): Call {
+    const {prepared, queuedAt, tag, flag, onStart, finish} = run;
+    const {plan, call} = prepared;
     let isOut = false;
-    const own: Call = {
+    return {
       startedAt: undefined,
       onStart,
       next: () => {
         if (isOut) return undefined;
         isOut = true;
         const queuedMilliseconds = performance.now() - queuedAt;
-        return guarded(lease, fail, async () => {
+        return guarded(run, async () => {
           finish(
             await this.#threads.do({type: 'whole', plan, call, queuedMilliseconds, tag, flag}),
           );
         });
       },
     };
-    return own;
-  }
-
-  #blockCall(
-    {plan, call}: PreparedCall,
-    tag: number,
-    lease: Lease,
-    flag: Int32Array,
-    queuedAt: number,
-    onStart: () => void,
-    finish: (answer: WrittenAnswer) => void,
-    fail: (reason: unknown) => void,
-  ): Call {
-    let packed: PackedCall | undefined;
-    let isPacking = false;
-    let nextBlock = 0;
-    let done = 0;
-    const reports: BlockReport[] = [];
-    const own: Call = {
-      startedAt: undefined,
-      onStart,
-      next: () => {
-        if (!packed) {
-          if (isPacking) return undefined;
-          isPacking = true;
-          return guarded(lease, fail, async () => {
-            packed = await this.#threads.do({type: 'pack', plan, call, tag});
-          });
-        }
-        const {header, job} = packed;
-        const count = blockCount(job);
-        if (nextBlock < count) {
-          const block = nextBlock++;
-          return guarded(lease, fail, async () => {
-            reports[block] = await this.#withScratch(scratch =>
-              this.#threads.do({type: 'block', job, block, tag: scratch, flag}),
-            );
-            done++;
-          });
-        }
-        if (nextBlock > count || done < count) return undefined;
-        nextBlock++;
-        const started = own.startedAt ?? queuedAt;
-        const timing = {
-          queuedMilliseconds: started - queuedAt,
-          computedMilliseconds: performance.now() - started,
-        };
-        return guarded(lease, fail, async () => {
-          finish(await this.#threads.do({type: 'answer', header, job, reports, timing, flag}));
-        });
-      },
-    };
-    return own;
   }
 
   /** Lends a task memory of its own until it is back. */
@@ -260,14 +221,3 @@ export class Scheduler {
     return undefined;
   }
 }
-
-/** A step of a call: its memory is kept until the step is over, and what it throws ends the call. */
-const guarded =
-  (lease: Lease, fail: (reason: unknown) => void, step: () => Promise<void>) =>
-  async (): Promise<void> => {
-    try {
-      await lease.during(step);
-    } catch (error) {
-      fail(error);
-    }
-  };

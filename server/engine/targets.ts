@@ -89,3 +89,28 @@ function copyColumn(
   const start = column * stride + from;
   for (let i = 0; i < count; i++) out[i] = values[start + i];
 }
+
+/** Positions of the targets `indices[start]` … `indices[start + count − 1]`. */
+export function positionsOfSamples(
+  targets: PackedTargets,
+  indices: Int32Array,
+  start: number,
+  count: number,
+  out: PositionColumns,
+): void {
+  for (let i = 0; i < count; i++) targetPositions(targets, indices[start + i], 1, rowOf(out, i));
+}
+
+/** One position of columns, as columns. */
+function rowOf(columns: PositionColumns, i: number): PositionColumns {
+  const one = (column: Float64Array): Float64Array => column.subarray(i, i + 1);
+  return {
+    x: one(columns.x),
+    y: one(columns.y),
+    z: one(columns.z),
+    xRemainder: one(columns.xRemainder),
+    yRemainder: one(columns.yRemainder),
+    zRemainder: one(columns.zRemainder),
+    radius: one(columns.radius),
+  };
+}

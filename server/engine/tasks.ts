@@ -1,8 +1,10 @@
 import type {Operation, ProblemCode} from '../../shared/api.ts';
 import type {Issue} from '../errors.ts';
 import type {AnswerHeader, Timing} from './answers/header.ts';
+import type {FormsReport, KnownForms} from './forms.ts';
 import type {BlockReport, Job} from './jobs.ts';
 import type {EngineLimits} from './limits.ts';
+import type {MultipoleJob} from './multipole/multipole-job.ts';
 import type {PackedCall} from './pack.ts';
 import type {Plan} from './plan.ts';
 
@@ -16,6 +18,7 @@ export type Task =
       readonly operation: Operation | 'estimates';
       readonly bytes: Uint8Array;
       readonly limits: EngineLimits;
+      readonly forms: KnownForms;
     }
   | {readonly type: 'warm'}
   | {
@@ -24,6 +27,15 @@ export type Task =
       readonly plan: Plan;
       readonly call: PackedCall | undefined;
       readonly tag: number;
+      readonly forms: KnownForms;
+    }
+  | {
+      /** What is done between two phases of a job. */
+      readonly type: 'advance';
+      readonly job: MultipoleJob;
+      readonly tag: number;
+      readonly forms: KnownForms;
+      readonly flag: Int32Array;
     }
   | {
       readonly type: 'block';
@@ -38,6 +50,7 @@ export type Task =
       readonly job: Job;
       readonly reports: readonly BlockReport[];
       readonly timing: Timing;
+      readonly tag: number;
       readonly flag: Int32Array;
     }
   | {
@@ -55,6 +68,8 @@ export interface PreparedCall {
   readonly plan: Plan;
   /** There already if a thread has read the body. */
   readonly call?: PackedCall;
+  /** What was found and made on the way. */
+  readonly forms?: FormsReport;
 }
 
 export interface WrittenAnswer {
@@ -66,8 +81,9 @@ export interface WrittenAnswer {
 /** What each type of task results in. */
 export interface TaskResults {
   readonly prepare: PreparedCall;
+  readonly advance: {readonly job: Job; readonly forms: FormsReport};
   readonly warm: undefined;
-  readonly pack: PackedCall;
+  readonly pack: {readonly call: PackedCall; readonly forms: FormsReport};
   readonly block: BlockReport;
   readonly answer: WrittenAnswer;
   readonly whole: WrittenAnswer;

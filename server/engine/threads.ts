@@ -18,6 +18,8 @@ export interface ThreadData {
   readonly heap: SharedHeap;
   /** Undefined where only the plain ones are to be had. */
   readonly kernels: KernelModule | undefined;
+  /** How many tags threads have given to forms. */
+  readonly formTags: Int32Array;
 }
 
 /** Threads that do tasks, one each at a time. */
@@ -29,7 +31,8 @@ export class Threads {
   constructor(count: number, heap: Heap, kernels: KernelModule | undefined) {
     this.count = count;
     this.#heap = heap;
-    const workerData: ThreadData = {heap: heap.shared, kernels};
+    const formTags = new Int32Array(new SharedArrayBuffer(Int32Array.BYTES_PER_ELEMENT));
+    const workerData: ThreadData = {heap: heap.shared, kernels, formTags};
     this.#pool = new Piscina({
       ...workerFile(),
       workerData,

@@ -3,27 +3,60 @@ import {move, transferableSymbol, valueSymbol} from 'piscina';
 
 import {ServiceError} from '../errors.ts';
 import {computeBlock, writeAnswer} from './evaluate.ts';
+import {Forms, type KnownForms} from './forms.ts';
 import {Heap} from './heap.ts';
 import {housedCall} from './housed-call.ts';
 import type {Stop} from './jobs.ts';
 import {compiledKernels} from './kernels/compiled-kernels.ts';
 import {instantiate} from './kernels/load.ts';
 import {ownMemory, sharedMemory} from './memory.ts';
+import {Arena} from './multipole/arena.ts';
+import {SCRATCH} from './multipole/kernels.ts';
+import {advance} from './multipole/run.ts';
+import type {MultipoleStation} from './multipole/tools.ts';
 import {pack} from './pack.ts';
 import {runWhole} from './run-call.ts';
 import type {Task, TaskResponse, TaskResults, WrittenAnswer} from './tasks.ts';
 import type {ThreadData} from './threads.ts';
 import type {Workplace} from './workplace.ts';
 
-const {heap: sharedHeap, kernels} = workerData as ThreadData;
+const {heap: sharedHeap, kernels, formTags} = workerData as ThreadData;
 const heap = new Heap(sharedHeap);
 const kernelExports = kernels && instantiate(kernels, heap.memory);
 const compiled = kernelExports && compiledKernels(kernelExports);
 
-const workplaceOf = (tag: number): Workplace => ({
-  memory: heap.memoryOf(tag),
-  ...(compiled && {compiled}),
-});
+/** Tags of forms are below 0, those of calls above. */
+const newFormTag = (): number => -1 - Atomics.add(formTags, 0, 1);
+
+let station: MultipoleStation | undefined;
+
+/** Kernels of the multipole method, with memory that is taken once. */
+function multipoleStation(): MultipoleStation | undefined {
+  if (!station && kernelExports) {
+    station = {exports: kernelExports, scratch: heap.allocate(newFormTag(), SCRATCH)};
+  }
+  return station;
+}
+
+function workplaceOf(tag: number): Workplace {
+  return {
+    memory: heap.memoryOf(tag),
+    ...(compiled && {compiled}),
+    ...(station && {multipole: station}),
+  };
+}
+
+/** Lets a step use forms; what it made is given back if it fails. */
+function withForms<T>(known: KnownForms, step: (forms: Forms) => T): T {
+  const forms = new Forms(known, heap, newFormTag);
+  try {
+    return step(forms);
+  } catch (error) {
+    // Goes on to who asked.
+    forms.discard();
+    throw error;
+  }
+}
 
 /** Does one task of a thread. Refusals are results; anything else thrown is a bug. */
 export default async function work(task: Task): Promise<TaskResponse> {
@@ -47,7 +80,10 @@ async function resultOf(task: Task): Promise<TaskResults[Task['type']]> {
       if (task.operation === 'estimates') return {plan: withoutRequest(plan)};
       // In the heap only once it runs, which not all calls do.
       const memory = plan.route === 'inline' ? ownMemory : sharedMemory;
-      return {plan: withoutRequest(plan), call: pack(plan, memory)};
+      return withForms(task.forms, forms => {
+        const call = pack(plan, memory, forms);
+        return {plan: withoutRequest(plan), call, forms: forms.report};
+      });
     }
     case 'warm': {
       const {compileChecks} = await import('./prepare.ts');
@@ -55,14 +91,27 @@ async function resultOf(task: Task): Promise<TaskResults[Task['type']]> {
       return undefined;
     }
     case 'pack':
-      return task.call
-        ? housedCall(task.call, heap.memoryOf(task.tag))
-        : pack(task.plan, heap.memoryOf(task.tag));
+      return withForms(task.forms, forms => {
+        const memory = heap.memoryOf(task.tag);
+        const call = task.call ? housedCall(task.call, memory) : pack(task.plan, memory, forms);
+        return {call, forms: forms.report};
+      });
+    case 'advance':
+      return withForms(task.forms, forms => {
+        const own = multipoleStation();
+        if (!own) throw new RangeError('expected kernels');
+        const arena = new Arena(heap, task.tag);
+        const job = advance(task.job, {...own, arena, forms, stop: stopOf(task.flag)});
+        return {job, forms: forms.report};
+      });
     case 'block':
+      if (task.job.kind === 'multipole') multipoleStation();
       return computeBlock(task.job, task.block, stopOf(task.flag), workplaceOf(task.tag));
     case 'answer': {
       const {header, job, reports, timing} = task;
-      return {bytes: writeAnswer(header, job, reports, timing, stopOf(task.flag)), timing};
+      const workplace = workplaceOf(task.tag);
+      const stop = stopOf(task.flag);
+      return {bytes: writeAnswer(header, job, reports, timing, stop, workplace), timing};
     }
     case 'whole':
       return runWhole(

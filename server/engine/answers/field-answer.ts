@@ -3,7 +3,13 @@ import {Issues} from '../issues.ts';
 import type {BlockReport, FieldJob, Stop} from '../jobs.ts';
 import {COINCIDENCES_LISTED} from '../limits.ts';
 import {canonicalNaN, resultDigest} from './digests.ts';
-import {answerTail, usedCoincidenceDistance, type AnswerHeader, type Timing} from './header.ts';
+import {
+  answerTail,
+  usedCoincidenceDistance,
+  type AccuracyFacts,
+  type AnswerHeader,
+  type Timing,
+} from './header.ts';
 
 /** Values written between two looks at `Stop`: a few milliseconds. */
 const CHUNK = 8192;
@@ -21,6 +27,7 @@ export function fieldAnswer(
   reports: readonly BlockReport[],
   timing: Timing,
   stop: Stop,
+  accuracy: AccuracyFacts,
 ): Uint8Array | undefined {
   if (job.onCoincidence === 'reject') rejectCoincident(header, job, reports);
   canonicalNaN(job.out);
@@ -49,7 +56,7 @@ export function fieldAnswer(
     coincidentCount: coincidentCount(reports),
   };
   const used = usedCoincidenceDistance(header, reach);
-  const tail = answerTail(header, used, resultDigest(job.out), timing);
+  const tail = answerTail(header, used, resultDigest(job.out), timing, accuracy);
   const last = Buffer.from(`${text}]},${JSON.stringify(rest).slice(1, -1)}${tail}`, 'utf8');
   return parts.length === 0 ? last : Buffer.concat([...parts, last]);
 }

@@ -2,8 +2,9 @@ import type {EchoedUnits, Operation} from '../../../shared/api.ts';
 import {CONSTANTS_EDITION} from '../../../shared/physical-constants.ts';
 import {unitOf} from '../../../shared/units.ts';
 import {dimensionsOf, symbolOf, type FilledRequest} from '../filled-request.ts';
+import type {EstimatedError} from '../multipole/multipole-job.ts';
 import type {PackedPlacement} from '../placement.ts';
-import type {Plan} from '../plan.ts';
+import type {Method, Plan} from '../plan.ts';
 import {inputDigest} from './digests.ts';
 import {notices} from './notices.ts';
 
@@ -24,10 +25,26 @@ export interface AnswerHeader {
   readonly targets: 'points' | 'grid' | 'path' | 'none';
 }
 
-/** How long a call waited and took [ms]. */
+/** How long a call waited and took [ms], and what it found prepared. */
 export interface Timing {
   readonly queuedMilliseconds: number;
   readonly computedMilliseconds: number;
+  readonly preparation?: Preparation;
+}
+
+/** Prepared forms that were kept, and that had to be made. */
+export interface Preparation {
+  readonly hits: number;
+  readonly misses: number;
+}
+
+/** How the numbers of an answer were obtained. */
+export interface AccuracyFacts {
+  readonly method: Method;
+  readonly tolerance?: number;
+  readonly estimated?: EstimatedError;
+  /** Where rounding alone may exceed the tolerance: what direct sums are within. */
+  readonly reached?: number;
 }
 
 export function answerHeader(plan: Plan, placements: readonly PackedPlacement[]): AnswerHeader {
@@ -80,14 +97,17 @@ export function answerTail(
   coincidenceDistance: number,
   resultDigest: string,
   timing: Timing,
+  facts: AccuracyFacts = {method: 'direct'},
 ): string {
-  const accuracy = JSON.stringify({method: 'direct', coincidenceDistance});
+  const {method, ...rest} = facts;
+  const accuracy = JSON.stringify({method, coincidenceDistance, ...rest});
   const placements =
     header.placements.length > 0 ? `,"placements":${JSON.stringify(header.placements)}` : '';
   const cost = JSON.stringify({
     pairs: header.pairs,
     queuedMilliseconds: toMicroseconds(timing.queuedMilliseconds),
     computedMilliseconds: toMicroseconds(timing.computedMilliseconds),
+    ...(timing.preparation && {preparation: timing.preparation}),
   });
   const digests = `"inputDigest":"${header.inputDigest}","resultDigest":"${resultDigest}"`;
   return `,"accuracy":${accuracy}${placements},"cost":${cost},"engine":${ENGINE},${digests},"notices":${NOTICES}}`;

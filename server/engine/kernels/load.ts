@@ -1,6 +1,7 @@
 import {existsSync, readFileSync} from 'node:fs';
 import {fileURLToPath} from 'node:url';
 
+import type {MultipoleExports} from '../multipole/kernels.ts';
 import type {DirectExports} from './compiled-kernels.ts';
 
 // The only file that touches WebAssembly.
@@ -9,10 +10,10 @@ import type {DirectExports} from './compiled-kernels.ts';
 export type KernelMemory = WebAssembly.Memory | {readonly buffer: SharedArrayBuffer};
 export type KernelModule = WebAssembly.Module;
 /** What the module exports; each family of kernels adds its own. */
-export type KernelExports = DirectExports & {readonly version: () => number};
+export type KernelExports = DirectExports & MultipoleExports & {readonly version: () => number};
 
 /** Raised, with `version` in assembly/direct.ts, whenever the kernels are called in another way. */
-const VERSION = 2;
+const VERSION = 3;
 const PAGE = 65_536;
 /** Below this a heap is of no use [bytes]. */
 const SMALLEST = 2 ** 24;

@@ -1,4 +1,5 @@
 import type {Heap} from '../heap.ts';
+import type {Memory} from '../memory.ts';
 
 /** Memory of one call or one kept form, in views that kernels can be given by address. */
 export class Arena {
@@ -43,6 +44,12 @@ export class Arena {
     const out = this.integers(values.length);
     out.set(values);
     return out;
+  }
+
+  /** For what only takes doubles. */
+  get memory(): Memory {
+    const give = (length: number): Float64Array => this.doubles(length);
+    return Object.assign(give, {addressOf: (values: Float64Array) => values.byteOffset});
   }
 
   get buffer(): SharedArrayBuffer {

@@ -9,9 +9,18 @@ import {targetTree} from './interactions.ts';
 import {atPhase, type MultipoleJob, type Part, type PartCharges} from './multipole-job.ts';
 import {nearWork} from './near.ts';
 import {chooseSamples, samplingWork} from './samples.ts';
-import {boundsOf, COLUMN_PADDING, rootCube, sourceTree, type Positions} from './source-tree.ts';
+import {
+  boundsOf,
+  COLUMN_PADDING,
+  rootCube,
+  sourceTree,
+  type Positions,
+  type SourceTree,
+} from './source-tree.ts';
+import type {Cube} from './boxes.ts';
+import type {LoadedTable} from './load-table.ts';
 import {writeSources, writeTargets} from './structs.ts';
-import type {Tools} from './tools.ts';
+import {checkStop, tableOf, type Tools} from './tools.ts';
 
 const BATCH = 256;
 
@@ -22,10 +31,14 @@ export function begin(job: MultipoleJob, tools: Tools): MultipoleJob {
   const {targets, radius} = positionsOf(job, arena);
   const rounding = field.charges.largestRadius + radius;
   const reach = Math.max(field.coincidenceDistance, rounding, MIN_DISTANCE);
-  const parts = job.charges.map(charges => partOf(job, charges, targets, reach, tools));
+  const table = tableOf(tools, efforts[job.effort].level.name);
+  const parts = job.charges.map(charges => {
+    return partOf(job, charges, targets, reach, table, tools);
+  });
   const samples = chooseSamples(field, arena);
   const work = [...nearWork(job, parts), ...samplingWork(field, samples)];
   return atPhase(job, 'near', work, {
+    table,
     parts,
     samples,
     reach: Math.max(field.coincidenceDistance, rounding),
@@ -56,16 +69,23 @@ function partOf(
   charges: PartCharges,
   placed: Positions,
   placedReach: number,
-  {arena, table}: Tools,
+  table: LoadedTable,
+  {arena, forms, stop}: Tools,
 ): Part {
-  const {level, pairs, capacity} = efforts[effort];
+  const {pairs, capacity} = efforts[effort];
   const targets = inFrame(charges, placed, arena);
   const bounds = boundsOf(targets);
   // Turning targets into the frame rounds them, and what is coincident must still be near.
   const largest = Math.max(...bounds.high.map(Math.abs), ...bounds.low.map(Math.abs));
   const reach = placedReach + (charges.placement ? 64 * UNIT_ROUNDOFF * largest : 0);
-  const sources = sourceTree(arena, charges, rootCube(charges, bounds), capacity);
-  const tree = targetTree(arena, targets, sources, table(level.name), {pairs, smallestBox: reach});
+  const root = rootCube(charges, bounds);
+  const {digest} = charges;
+  const make = (own: Arena): SourceTree => sourceTree(own, charges, root, capacity);
+  const key = digest && treeKey(digest, root, capacity);
+  const sources = key === undefined ? make(arena) : forms.get(key, make);
+  checkStop(stop);
+  const tree = targetTree(arena, targets, sources, table, {pairs, smallestBox: reach});
+  checkStop(stop);
   const column = (): Float64Array => arena.doubles(targets.count + COLUMN_PADDING);
   const values = {
     v: column(),
@@ -75,6 +95,7 @@ function partOf(
   return {
     charges,
     sources,
+    treeKey: key,
     targets: tree,
     values,
     reach,
@@ -100,3 +121,6 @@ function inFrame({placement}: PartCharges, placed: Positions, arena: Arena): Pos
   }
   return {count, x, y, z};
 }
+
+const treeKey = (digest: string, {x, y, z, size}: Cube, capacity: number): string =>
+  `tree:${digest}:${x},${y},${z},${size}:${capacity}`;

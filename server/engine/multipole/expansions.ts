@@ -1,30 +1,49 @@
 import {kernelsOf} from './kernels.ts';
 import {numberSize, type LoadedTable} from './load-table.ts';
 import type {Part, Work} from './multipole-job.ts';
-import {BOX_PADDING} from './source-tree.ts';
-import {setExpansions, setLocals} from './structs.ts';
+import type {Arena} from './arena.ts';
+import {BOX_PADDING, type SourceTree} from './source-tree.ts';
+import {setExpansions, setLocals, type SourceExpansions} from './structs.ts';
 import type {Tools} from './tools.ts';
 
-/** Multipoles of all boxes of a part, from the leaves up, and room for its local expansions. */
+/** Multipoles of all boxes of a part, kept where its tree is, and room for its local expansions. */
 export function makeExpansions(part: Part, table: LoadedTable, tools: Tools): void {
-  const {arena, exports, scratch} = tools;
-  const {sources, targets, sourcesAddress} = part;
+  const {arena, forms} = tools;
+  const {sources, sourcesAddress, targets, treeKey} = part;
+  const make = (own: Arena): SourceExpansions =>
+    multipolesOf(sources, sourcesAddress, table, own, tools);
+  const expansions =
+    treeKey === undefined
+      ? make(arena)
+      : forms.get(`${treeKey}:multipoles:${table.level.name}`, make);
+  setExpansions(arena, sourcesAddress, expansions);
+  const bytes = numberSize(table.level) * table.size;
+  setLocals(arena, part.targetsAddress, arena.take(bytes * (targets.boxCount + BOX_PADDING)));
+}
+
+/** From the leaves up. */
+function multipolesOf(
+  {boxCount, leaves, levels}: SourceTree,
+  sourcesAddress: number,
+  table: LoadedTable,
+  arena: Arena,
+  {exports, scratch}: Tools,
+): SourceExpansions {
   const kernels = kernelsOf(exports, table.level);
-  const bytes = numberSize(table.level);
   const room = (boxes: number, size: number): number =>
-    arena.take(bytes * size * (boxes + BOX_PADDING));
-  setExpansions(arena, sourcesAddress, {
-    multipoles: room(sources.boxCount, table.size),
-    compressed: room(sources.boxCount, table.sourceSize),
+    arena.take(numberSize(table.level) * size * (boxes + BOX_PADDING));
+  const expansions = {
+    multipoles: room(boxCount, table.size),
+    compressed: room(boxCount, table.sourceSize),
     zeros: room(0, Math.max(table.size, table.sourceSize)),
-  });
-  const {leaves, levels} = sources;
+  };
+  setExpansions(arena, sourcesAddress, expansions);
   kernels.multipoles(sourcesAddress, table.address, leaves.byteOffset, 0, leaves.length, scratch);
   for (let level = levels.length - 2; level >= 0; level--) {
     kernels.up(sourcesAddress, table.address, levels[level], levels[level + 1], scratch);
   }
-  kernels.kept(sourcesAddress, table.address, 0, sources.boxCount, scratch);
-  setLocals(arena, part.targetsAddress, room(targets.boxCount, table.size));
+  kernels.kept(sourcesAddress, table.address, 0, boxCount, scratch);
+  return expansions;
 }
 
 /** Far boxes of a piece of work: some 20 ms of them. */

@@ -1,5 +1,7 @@
 import type {FieldJob} from '../jobs.ts';
+import {effortFor} from './effort.ts';
 import type {TargetTree} from './interactions.ts';
+import type {LoadedTable} from './load-table.ts';
 import type {SourceTree} from './source-tree.ts';
 import type {TargetValues} from './structs.ts';
 
@@ -26,6 +28,8 @@ export interface PartCharges {
 export interface Part {
   readonly charges: PartCharges;
   readonly sources: SourceTree;
+  /** Under which the tree is kept, if it is. */
+  readonly treeKey?: string;
   readonly targets: TargetTree;
   /** Sums at the sorted targets [C/m, C/m²] in the frame of the part. */
   readonly values: TargetValues;
@@ -83,6 +87,8 @@ export interface MultipoleJob {
   readonly work: readonly Work[];
   /** 0 … length of `work`, as in every job. */
   readonly blocks: readonly number[];
+  /** The table of the effort; there once the trees are. */
+  readonly table?: LoadedTable;
   readonly parts: readonly Part[];
   readonly samples: Samples;
   /** [m] Up to here a pair may be coincident. */
@@ -91,6 +97,32 @@ export interface MultipoleJob {
   readonly coincident: readonly number[];
   readonly coincidentCount: number;
   readonly estimated?: EstimatedError;
+}
+
+/** A job of which nothing is computed yet. */
+export function beginningOf(
+  field: FieldJob,
+  charges: readonly PartCharges[],
+  mostPairs: number,
+): MultipoleJob {
+  if (field.tolerance === undefined) throw new RangeError('expected a tolerance');
+  return {
+    kind: 'multipole',
+    field,
+    tolerance: field.tolerance,
+    charges,
+    mostPairs,
+    phase: 'begin',
+    effort: effortFor(field.tolerance, field.sum !== 'potential'),
+    leastEffort: 0,
+    work: [],
+    blocks: [0],
+    parts: [],
+    samples: {indices: new Int32Array(0), sums: []},
+    reach: 0,
+    coincident: [],
+    coincidentCount: 0,
+  };
 }
 
 /** A job at the beginning of a phase whose pieces are `work`. */

@@ -2,6 +2,8 @@ import {ServiceError} from '../../errors.ts';
 import {scalesOf, writeColumn, type Results} from '../field-columns.ts';
 import type {BlockReport, FieldJob} from '../jobs.ts';
 import {RESULT} from '../methods/direct-sum.ts';
+import type {Workplace} from '../workplace.ts';
+import type {LoadedTable} from './load-table.ts';
 import {begin} from './begin.ts';
 import {effortFor, efforts, nextEffort} from './effort.ts';
 import {farWork, handDown, makeExpansions, valuesWork} from './expansions.ts';
@@ -11,23 +13,29 @@ import {atPhase, SAMPLING, type MultipoleJob} from './multipole-job.ts';
 import {listed, sumFlagged, type Coincidences} from './near.ts';
 import {sumSamples} from './samples.ts';
 import {farShare} from './share.ts';
-import type {Tools} from './tools.ts';
+import {tableOf, type Tools} from './tools.ts';
 
 /** Computes one piece of the phase that a job is in. */
-export function computeMultipoleBlock(job: MultipoleJob, block: number, tools: Tools): BlockReport {
+export function computeMultipoleBlock(
+  job: MultipoleJob,
+  block: number,
+  workplace: Workplace,
+): BlockReport {
   const {part: index, first, last} = job.work[block];
   const nothing = {coincident: [], coincidentCount: 0, reach: job.reach};
   if (index === SAMPLING) {
-    sumSamples(job.field, job.samples, first, last, tools.workplace);
+    sumSamples(job.field, job.samples, first, last, workplace);
     return nothing;
   }
+  const {table} = job;
+  const {multipole} = workplace;
+  if (!table || !multipole) throw new RangeError('expected a table and kernels');
   const part = job.parts[index];
-  const {level} = efforts[job.effort];
-  const {address} = tools.table(level.name);
-  const kernels = kernelsOf(tools.exports, level);
+  const {address, level} = table;
+  const kernels = kernelsOf(multipole.exports, level);
   const {sourcesAddress: sources, targetsAddress: targets, reach} = part;
   const leaves = part.targets.leaves.byteOffset;
-  const {scratch} = tools;
+  const {scratch} = multipole;
   if (job.phase === 'near') {
     kernels.near(sources, targets, leaves, first, last, reach, scratch);
   } else if (job.phase === 'far') {
@@ -38,16 +46,15 @@ export function computeMultipoleBlock(job: MultipoleJob, block: number, tools: T
   return nothing;
 }
 
-/** What is done between two phases. */
-export function advance(job: MultipoleJob, tools: Tools): MultipoleJob | 'direct' {
+/** What is done between two phases; a field job if it must be summed directly after all. */
+export function advance(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   switch (job.phase) {
     case 'begin':
       return begin(job, tools);
     case 'near':
       return afterNear(job, tools);
     case 'far': {
-      const table = tools.table(efforts[job.effort].level.name);
-      for (const part of job.parts) handDown(part, table, tools);
+      for (const part of job.parts) handDown(part, usedTable(job), tools);
       return atPhase(job, 'values', valuesWork(job.parts));
     }
     case 'values':
@@ -71,16 +78,17 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob {
     return begin({...job, effort: wanted}, tools);
   }
   const used = better.separation === level.separation ? wanted : effort;
-  const table = tools.table(efforts[used].level.name);
+  const table = tableOf(tools, efforts[used].level.name);
   for (const part of parts) makeExpansions(part, table, tools);
   return atPhase(job, 'far', farWork(parts), {
     effort: used,
+    table,
     coincident: listed(found),
     coincidentCount: found.coincidentCount,
   });
 }
 
-function afterValues(job: MultipoleJob, tools: Tools): MultipoleJob | 'direct' {
+function afterValues(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   const {field, parts, samples, effort, tolerance} = job;
   const totals = addUp(field, parts, tools.arena);
   const estimated = estimateError(totals, samples);
@@ -92,7 +100,7 @@ function afterValues(job: MultipoleJob, tools: Tools): MultipoleJob | 'direct' {
   if (next !== undefined) {
     return begin({...job, effort: next, leastEffort: next}, tools);
   }
-  if (field.charges.count * field.count <= job.mostPairs) return 'direct';
+  if (field.charges.count * field.count <= job.mostPairs) return field;
   const detail = `The best the multipole method reached is a relative error of about ${Math.max(estimated.potential, estimated.field ?? 0).toExponential(1)}; the tolerance is ${tolerance}.`;
   throw new ServiceError('tolerance-not-reached', detail, {
     errors: [{pointer: '/accuracy/tolerance', code: 'tolerance-not-reached', detail}],
@@ -112,4 +120,9 @@ function writeTotals(field: FieldJob, totals: Totals): void {
       field.out.subarray(n * field.count, (n + 1) * field.count),
     );
   });
+}
+
+function usedTable({table}: MultipoleJob): LoadedTable {
+  if (!table) throw new RangeError('expected a table');
+  return table;
 }

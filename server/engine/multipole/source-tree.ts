@@ -50,7 +50,6 @@ export function sourceTree(
   charges: Positions & {readonly q: Float64Array},
   root: Cube,
   capacity: number,
-  smallestBox = 0,
 ): SourceTree {
   const {count} = charges;
   const column = (values: Float64Array): Float64Array => {
@@ -70,7 +69,7 @@ export function sourceTree(
     if (box === levels[levels.length - 1]) levels.push(boxes.count);
     const held = boxes.pointsIn(box);
     if (held > capacity && boxes.isOnePlace(box, points)) mergeAlike(boxes, box, {q, members});
-    else if (held > capacity && boxes.sizeOf(box) >= 2 * smallestBox && boxes.isDivisible(box)) {
+    else if (held > capacity && boxes.isDivisible(box)) {
       boxes.split(box, points);
       continue;
     }

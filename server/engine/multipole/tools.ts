@@ -1,16 +1,30 @@
-import type {Workplace} from '../workplace.ts';
+import {ServiceError} from '../../errors.ts';
+import type {Forms} from '../forms.ts';
+import type {Stop} from '../jobs.ts';
 import type {Arena} from './arena.ts';
+import {findTable} from './find-table.ts';
 import type {MultipoleExports} from './kernels.ts';
-import type {LoadedTable} from './load-table.ts';
+import {loadTable, type LoadedTable} from './load-table.ts';
 
-/** What a thread has to compute multipole sums with. */
-export interface Tools {
+/** The kernels of a thread, and SCRATCH bytes of its own at an address. */
+export interface MultipoleStation {
   readonly exports: MultipoleExports;
-  /** Address of SCRATCH bytes of this thread. */
   readonly scratch: number;
+}
+
+/** What the steps between phases need besides. */
+export interface Tools extends MultipoleStation {
   /** Memory of the call. */
   readonly arena: Arena;
-  /** The table of a level, which stays in the heap once it was asked for. */
-  readonly table: (level: string) => LoadedTable;
-  readonly workplace: Workplace;
+  readonly forms: Forms;
+  readonly stop: Stop;
+}
+
+/** The table of a level, which stays in the heap once it was asked for. */
+export const tableOf = ({forms}: Tools, level: string): LoadedTable =>
+  forms.shared(`table:${level}`, arena => loadTable(findTable(level), arena));
+
+/** Ends a step of a call that nobody waits for any more. */
+export function checkStop(stop: Stop): void {
+  if (stop()) throw new ServiceError('time-out', 'The call was stopped.');
 }
