@@ -1,3 +1,4 @@
+import {duration} from './durations';
 import {columnWriter, fixed, groups, pairs, pairsText, plain, significant} from './numbers';
 
 describe('numbers', () => {
@@ -40,5 +41,14 @@ describe('numbers', () => {
       '0.00',
       '0.00',
     ]);
+  });
+});
+
+describe('durations', () => {
+  it('have two digits, and are seconds from a second on', () => {
+    expect(duration(0)).toEqual({written: {digits: '0', exponent: null}, unit: 'ms'});
+    expect(duration(4.23).written.digits).toBe('4.2');
+    expect(duration(412)).toEqual({written: {digits: '412', exponent: null}, unit: 'ms'});
+    expect(duration(999)).toEqual({written: {digits: '1.0', exponent: null}, unit: 's'});
   });
 });

@@ -1,32 +1,63 @@
 import {ChangeDetectionStrategy, Component, computed, input} from '@angular/core';
+import {RouterLink} from '@angular/router';
+import {duration} from '../format/durations';
 import {NumberText} from '../format/number-text';
-import {significant} from '../format/numbers';
 import {PairsText} from '../format/pairs-text';
 import {CopyButton} from '../states/copy-button';
+import {accuracyFacts, accuracyNote} from './accuracy-facts';
 import type {FinishedRun} from './answer-view';
-
-const largest = (column: readonly (number | null)[] | undefined): number | null =>
-  column ? column.reduce<number>((most, value) => Math.max(most, value ?? 0), 0) : null;
+import {methodName} from './method-name';
 
 /** The title block of an answer: how it was computed, how well, what it cost, and how to name it. */
 @Component({
   selector: 'app-answer-facts',
-  imports: [CopyButton, NumberText, PairsText],
+  imports: [CopyButton, NumberText, PairsText, RouterLink],
   template: `
     <dl class="title-block">
       <div>
         <dt>Method</dt>
-        <dd>Direct sum</dd>
+        <dd>{{ method() }}</dd>
       </div>
       <div>
         <dt>Charged</dt>
         <dd><app-pairs [count]="run().answer.cost.pairs" /></dd>
       </div>
-      @if (bound(); as bound) {
-        <div>
-          <dt>{{ bound.label }}</dt>
+      <div>
+        <dt>Computed</dt>
+        <dd>
+          <app-number [value]="computedIn().written" /><span class="unit">{{
+            computedIn().unit
+          }}</span>
+          &ngsp;<span class="variant small more"
+            >waited <app-number [value]="waited().written" /><span class="unit">{{
+              waited().unit
+            }}</span></span
+          >
+        </dd>
+      </div>
+      @if (run().answer.cost.preparation; as preparation) {
+        <div title="Packed columns and trees kept from earlier calls with the same charges">
+          <dt>Reused</dt>
           <dd>
-            <app-number [value]="bound.value" /><span class="unit">{{ bound.unit }}</span>
+            <span class="num">{{ preparation.hits }}</span> of
+            <span class="num">{{ preparation.hits + preparation.misses }}</span>&ngsp;<span
+              class="variant"
+              >prepared forms</span
+            >
+          </dd>
+        </div>
+      }
+      @for (fact of facts(); track fact.label) {
+        <div>
+          <dt>{{ fact.label }}</dt>
+          <dd>
+            <app-number [value]="fact.value" />
+            @if (fact.unit) {
+              <span class="unit">{{ fact.unit }}</span>
+            }
+            @if (fact.largest; as largest) {
+              &ngsp;<span class="variant small more">largest <app-number [value]="largest" /></span>
+            }
           </dd>
         </div>
       }
@@ -47,6 +78,9 @@ const largest = (column: readonly (number | null)[] | undefined): number | null 
         </div>
       }
     </dl>
+    @if (note(); as note) {
+      <p class="small">{{ note }} <a routerLink="/reference/accuracy">What this means</a></p>
+    }
     <ul class="variant small">
       @for (notice of run().answer.notices; track notice.code) {
         <li>{{ notice.detail }}</li>
@@ -69,6 +103,20 @@ const largest = (column: readonly (number | null)[] | undefined): number | null 
       text-overflow: ellipsis;
     }
 
+    .more {
+      margin-inline-start: 4px;
+      white-space: nowrap;
+
+      app-number {
+        font-size: inherit;
+        line-height: inherit;
+      }
+    }
+
+    p {
+      margin-block-start: 10px;
+    }
+
     ul {
       display: grid;
       gap: 4px;
@@ -86,31 +134,12 @@ export class AnswerFacts {
     const [, hex = ''] = this.run().answer.resultDigest.split(':');
     return `sha-256:${hex.slice(0, 4)}…${hex.slice(-4)}`;
   });
-  protected readonly bound = computed(() => {
-    const {answer} = this.run();
-    if ('columns' in answer) {
-      const {potentialBound, fieldBound} = answer.columns;
-      const ofPotential = largest(potentialBound);
-      if (ofPotential !== null) {
-        return {
-          label: 'Largest bound of V',
-          value: significant(ofPotential, 2),
-          unit: answer.units.potential,
-        };
-      }
-      const ofField = largest(fieldBound);
-      return ofField === null
-        ? null
-        : {label: 'Largest bound of E', value: significant(ofField, 2), unit: answer.units.field};
-    }
-    if ('assembly' in answer) return null;
-    const bounds = answer.bodies.flatMap(({forceBound}) => forceBound ?? []);
-    return bounds.length === 0
-      ? null
-      : {
-          label: 'Largest bound of F',
-          value: significant(Math.max(...bounds), 2),
-          unit: answer.units.force,
-        };
-  });
+  protected readonly method = computed(() => methodName[this.run().answer.accuracy.method]);
+  protected readonly facts = computed(() => accuracyFacts(this.run().answer));
+  protected readonly note = computed(() => accuracyNote(this.run().answer));
+
+  protected readonly computedIn = computed(() =>
+    duration(this.run().answer.cost.computedMilliseconds),
+  );
+  protected readonly waited = computed(() => duration(this.run().answer.cost.queuedMilliseconds));
 }

@@ -8,17 +8,20 @@ import {
 } from '@angular/core';
 import {MatIconButton} from '@angular/material/button';
 import type {FieldAnswer, FieldRequest, Operation} from '../../../shared/api';
+import {duration} from '../format/durations';
 import {NumberText} from '../format/number-text';
-import {significant} from '../format/numbers';
+import {fixed, type WrittenNumber} from '../format/numbers';
 import {FieldPicture} from '../field-picture/field-picture';
 import type {Quantity} from '../field-picture/levels';
 import {savePng} from '../field-picture/save-png';
 import {sectionOf} from '../field-picture/section';
 import {Icon} from '../icon/icon';
 import {download} from '../states/download';
+import {accuracyLine} from './accuracy-facts';
 import {BodyTables} from './body-tables';
 import {columnsOf} from './columns';
 import {ColumnsTable} from './columns-table';
+import {methodName} from './method-name';
 import {PathChart} from './path-chart';
 import type {Run} from './requests-api';
 
@@ -50,7 +53,7 @@ export class AnswerView {
   readonly only = input<'picture' | 'numbers' | null>(null);
 
   protected readonly computedIn = computed(() =>
-    significant(this.run().answer.cost.computedMilliseconds, 2),
+    duration(this.run().answer.cost.computedMilliseconds),
   );
   private readonly request = computed(() => JSON.parse(this.run().text) as FieldRequest);
   protected readonly field = computed(() => {
@@ -101,6 +104,8 @@ export class AnswerView {
     this.view() === 'strength' ? 'strength' : 'potential',
   );
 
+  protected readonly counted = (count: number): WrittenNumber => fixed(count, 0);
+
   protected choose(view: View): void {
     this.chosen.set(view);
   }
@@ -114,12 +119,14 @@ export class AnswerView {
     const section = this.section();
     const {answer, name, at} = this.run();
     if (!map || !section) return;
+    const accuracy = accuracyLine(answer, this.quantity() === 'potential' ? 'V' : 'E');
     const blob = await savePng(map, section, [
       {label: 'Request', value: name || this.run().operation},
       {
         label: 'Method',
-        value: answer.accuracy.method === 'direct' ? 'Direct sum' : answer.accuracy.method,
+        value: methodName[answer.accuracy.method],
       },
+      ...(accuracy ? [accuracy] : []),
       {
         label: 'Result digest',
         value: `${answer.resultDigest.slice(0, 14)}…${answer.resultDigest.slice(-6)}`,

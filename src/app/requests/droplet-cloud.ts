@@ -1,15 +1,5 @@
 import type {ChargeColumns} from '../../../shared/api';
-
-/** Mulberry32, a small generator with 32 bits of state: the same seed gives the same cloud everywhere. */
-function generator(seed: number): () => number {
-  let state = seed | 0;
-  return () => {
-    state = (state + 0x6d2b79f5) | 0;
-    let t = Math.imul(state ^ (state >>> 15), 1 | state);
-    t = (t + Math.imul(t ^ (t >>> 7), 61 | t)) ^ t;
-    return ((t ^ (t >>> 14)) >>> 0) / 4294967296;
-  };
-}
+import {seededNormal, seededRandom} from './seeded-random';
 
 const round = (value: number, decimals: number): number => Number(value.toFixed(decimals));
 
@@ -19,9 +9,8 @@ const round = (value: number, decimals: number): number => Number(value.toFixed(
  * as at a fixed fraction of the Rayleigh limit. The numbers are invented.
  */
 export function dropletCloud(count: number, seed: number): ChargeColumns {
-  const random = generator(seed);
-  const normal = (): number =>
-    Math.sqrt(-2 * Math.log(1 - random())) * Math.cos(2 * Math.PI * random());
+  const random = seededRandom(seed);
+  const normal = seededNormal(random);
   const [x, y, z, charge]: number[][] = [[], [], [], []];
   for (let k = 0; k < count; k++) {
     const height = 4 + 50 * random();

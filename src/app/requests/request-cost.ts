@@ -1,9 +1,11 @@
 import {ChangeDetectionStrategy, Component, computed, input} from '@angular/core';
 import type {Estimate} from '../../../shared/api';
+import {duration} from '../format/durations';
 import {NumberText} from '../format/number-text';
 import {pairs, significant} from '../format/numbers';
+import {methodName} from './method-name';
 
-/** What the request will cost, before it is sent. */
+/** What the request will cost, by which method it runs, and about how long, before it is sent. */
 @Component({
   selector: 'app-request-cost',
   imports: [NumberText],
@@ -20,15 +22,16 @@ import {pairs, significant} from '../format/numbers';
         </dd>
       </div>
       <div>
-        <dt>Route</dt>
-        <dd>{{ route() }}</dd>
+        <dt>Method</dt>
+        <dd>{{ method() }}</dd>
       </div>
       <div>
         <dt>Expected time</dt>
         <dd>
           @if (time(); as time) {
-            <span class="num">{{ time.prefix }}<app-number [value]="time.written" /></span
-            ><span class="unit">{{ time.unit }}</span>
+            {{ time.sign }} <app-number [value]="time.written" /><span class="unit">{{
+              time.unit
+            }}</span>
           } @else {
             –
           }
@@ -64,15 +67,18 @@ export class RequestCost {
     const estimate = this.estimate();
     return estimate && pairs(estimate.pairs);
   });
-  protected readonly route = computed(() => {
+  protected readonly method = computed(() => {
     const estimate = this.estimate();
-    return estimate === null ? '–' : estimate.route === 'inline' ? 'Inline' : 'Worker';
+    if (estimate === null) return '–';
+    const name = methodName[estimate.method];
+    return estimate.route === 'inline' ? `${name}, inline` : name;
   });
+
   protected readonly time = computed(() => {
-    const ms = this.estimate()?.milliseconds;
-    if (ms === undefined) return null;
-    if (ms < 1) return {prefix: 'under ', written: significant(1, 1), unit: 'ms'};
-    const [value, unit] = ms < 1000 ? [ms, 'ms'] : [ms / 1000, 's'];
-    return {prefix: 'about ', written: significant(value, 2), unit};
+    const estimate = this.estimate();
+    if (estimate === null) return null;
+    return estimate.milliseconds < 1
+      ? {sign: '<', written: significant(1, 1), unit: 'ms'}
+      : {sign: '≈', ...duration(estimate.milliseconds)};
   });
 }

@@ -1,9 +1,10 @@
-import type {FieldAnswer} from '../../../shared/api';
+import type {FieldAnswer, FieldRequest} from '../../../shared/api';
 import {columnsOf, csvOf} from './columns';
 import {compactJson} from './compact-json';
 import {curl} from './curl';
 import {dropletCloud} from './droplet-cloud';
 import {samples} from './samples';
+import {sprayAbovePanel} from './spray-above-panel';
 import {placesOfTargets} from './targets';
 
 describe('compact JSON', () => {
@@ -16,12 +17,13 @@ describe('compact JSON', () => {
   });
 
   it('keeps what fits on one line', () => {
+    expect(compactJson([1, 'a, b', true], 8)).toBe('[\n 1,\n "a, b",\n true\n]');
     expect(compactJson({a: [1, 2], b: {c: 'd'}})).toBe('{"a": [1, 2], "b": {"c": "d"}}');
   });
 });
 
 describe('samples', () => {
-  it('have charges in columns of equal length, 10 000 or more in one of them', () => {
+  it('have charges in columns of equal length, 50 000 in the largest of them', () => {
     const counts = samples.map(({text}) => {
       const {bodies} = JSON.parse(text()) as {bodies: {charges: Record<string, number[]>}[]};
       for (const {charges} of bodies) {
@@ -29,7 +31,26 @@ describe('samples', () => {
       }
       return bodies.reduce((sum, {charges}) => sum + charges['charge'].length, 0);
     });
-    expect(Math.max(...counts)).toBeGreaterThanOrEqual(10_000);
+    expect(Math.max(...counts)).toBe(50_000);
+  });
+
+  it('the spray states a tolerance, and fits into one call in bytes and in pairs', () => {
+    const text = samples.find(({name}) => name.startsWith('Spray'))?.text() ?? '';
+    const request = JSON.parse(text) as FieldRequest;
+    expect(request.accuracy).toEqual({tolerance: 1e-4});
+    expect(text.length).toBeLessThan(1.5 * 2 ** 20);
+    expect(50_000 * placesOfTargets(request.targets).count).toBeLessThanOrEqual(2e9);
+  });
+
+  it('the panel under the spray has the opposite charge, and less of it than the spray', () => {
+    const [spray, panel] = sprayAbovePanel(7).map(({charges}) =>
+      charges.charge.reduce((sum, charge) => sum + charge, 0),
+    );
+    expect(spray).toBeLessThan(0);
+    expect(panel).toBeGreaterThan(0);
+    // A panel without end would have all of it; this one subtends most of the half space.
+    expect(panel / -spray).toBeGreaterThan(0.5);
+    expect(panel / -spray).toBeLessThan(1);
   });
 
   it('the cloud is the same for the same seed, and another for another', () => {

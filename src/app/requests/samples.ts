@@ -8,6 +8,7 @@ import type {
 } from '../../../shared/api';
 import {compactJson} from './compact-json';
 import {dropletCloud} from './droplet-cloud';
+import {sprayAbovePanel} from './spray-above-panel';
 
 /** A request to begin with. All of them belong to one invented coating booth. */
 export interface Sample {
@@ -81,6 +82,25 @@ const cloud = (): FieldRequest => ({
   quantities: ['potential', 'field'],
 });
 
+const spray = (): FieldRequest => ({
+  units: {length: 'mm', charge: 'pC', potential: 'kV', field: 'kV/m'},
+  accuracy: {tolerance: 1e-4},
+  targets: {
+    grid: {
+      origin: [-150, 0, 2],
+      steps: [
+        [1, 0, 0],
+        [0, 0, 1],
+        [0, 0, 0],
+      ],
+      counts: [301, 129, 1],
+    },
+  },
+  quantities: ['potential', 'field'],
+  // Last, so that what can be changed by hand comes first.
+  bodies: sprayAbovePanel(SEED),
+});
+
 const path: FieldRequest = {
   units,
   bodies: [bell(58), needle, bracket],
@@ -122,6 +142,12 @@ export const samples: readonly Sample[] = [
     name: 'Cloud of 12 000 droplets',
     about: `Charged spray under the bell, seed ${SEED}`,
     text: () => compactJson(cloud()),
+  },
+  {
+    operation: 'fields',
+    name: 'Spray of 50 000 charges above a panel',
+    about: 'A cloud and an earthed panel, to a tolerance of 1e-4',
+    text: () => compactJson(spray()),
   },
   {
     operation: 'fields',
