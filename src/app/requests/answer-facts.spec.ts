@@ -123,6 +123,9 @@ describe('the facts of an answer', () => {
     expect(facts.get('Computed')).toBe('1.4s waited 12ms');
     expect(facts.get('Reused')).toBe('3 of 4 prepared forms');
     expect(facts.get('Charged')).toBe('1000 pairs');
+  });
+
+  it('say nothing of reuse where nothing is kept', () => {
     expect(shown(answer({})).facts.has('Reused')).toBe(false);
   });
 
