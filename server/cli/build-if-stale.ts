@@ -1,4 +1,4 @@
 import {build} from './build.ts';
 import {isBuildStale} from './build-stamp.ts';
 
-if (isBuildStale()) build();
+if (isBuildStale()) await build();

@@ -1,74 +1,100 @@
-import {createHash} from 'node:crypto';
-import {
-  existsSync,
-  mkdirSync,
-  readdirSync,
-  readFileSync,
-  renameSync,
-  rmSync,
-  writeFileSync,
-} from 'node:fs';
+import {fork} from 'node:child_process';
+import {existsSync, mkdirSync, readdirSync, readFileSync, rmSync} from 'node:fs';
 import {availableParallelism} from 'node:os';
 import {join} from 'node:path';
-import {fileURLToPath} from 'node:url';
-
-import {Piscina} from 'piscina';
 
 import {levels, type Level} from '../engine/multipole/tables/levels.ts';
-import type {TableList} from '../engine/multipole/tables/table-file-names.ts';
+import {TABLE_LIST, type TableList} from '../engine/multipole/tables/table-file-names.ts';
+import {put, shortDigest, tableFile, TABLES, type TableDone} from './build-table.ts';
 
-/** Where `server/engine/multipole/find-table.ts` finds the tables. */
-const FOLDER = 'dist/engine';
-const LIST = join(FOLDER, 'tables.json');
 const SOURCES = 'server/engine/multipole/tables';
-const WORKER = new URL('build-table-worker.ts', import.meta.url);
-
-const digest = (...parts: readonly (string | Uint8Array)[]): string =>
-  parts.reduce((hash, part) => hash.update(part), createHash('sha256')).digest('hex').slice(0, 12);
+const DECOMPOSITIONS = 'node_modules/ml-matrix/package.json';
 
 /**
- * Makes the operator tables of the multipole method, one file for each level that has none yet or
- * whose sources have changed, and removes all others.
+ * Makes the operator tables of the multipole method, one file a level, where there is none yet or
+ * what it was made from has changed, and removes the files that no level has.
  *
  * Same sources, same bytes on this machine: sums have a fixed order and nothing is random. Elsewhere
- * the last digits may differ where `Math.cos`, `Math.sin` or `Math.pow` do, which ECMAScript leaves
- * open; the four operations and `Math.sqrt` are exact.
+ * last digits may differ where `Math.sin`, `Math.cos` and `**` do, which ECMAScript leaves open, and
+ * all that follows from them; sums, products and `Math.sqrt` are the same everywhere.
  */
 export async function buildTables(): Promise<void> {
-  mkdirSync(FOLDER, {recursive: true});
-  const made = new Map(levels.map(level => [level.name, digestOf(level)]));
-  const known = readList();
+  mkdirSync(TABLES, {recursive: true});
+  const digests = digestsNow();
+  const before = listBefore();
+  const isCurrent = ({name}: Level): boolean =>
+    before.digests[name] === digests[name] && isWhole(name, before.files[name]);
   const list: TableList = {files: {}, digests: {}};
-  const missing: Level[] = [];
-  for (const level of levels) {
-    const {name} = level;
-    const file = known.files[name];
-    if (known.digests[name] === made.get(name) && isIntact(file)) add(list, name, file, made);
-    else missing.push(level);
-  }
-  if (missing.length > 0) {
-    const pool = new Piscina({
-      filename: fileURLToPath(WORKER),
-      maxThreads: Math.min(availableParallelism(), missing.length),
-    });
-    // The finest first: they take longest, and the others fill the gaps.
-    await Promise.all(
-      missing.reverse().map(async level => {
-        const start = performance.now();
-        const bytes = (await pool.run(level)) as Uint8Array;
-        const file = `multipole-${level.name}-${digest(bytes)}.bin`;
-        put(join(FOLDER, file), bytes);
-        add(list, level.name, file, made);
-        put(LIST, JSON.stringify(list, undefined, 2));
-        const seconds = ((performance.now() - start) / 1000).toFixed(1);
-        process.stderr.write(`> table ${level.name} ${seconds} s\n`);
+  const add = (name: string, file: string): void => {
+    list.files[name] = file;
+    list.digests[name] = digests[name];
+  };
+  for (const {name} of levels.filter(isCurrent)) add(name, before.files[name]);
+  const save = (): void => put(join(TABLES, TABLE_LIST), `${JSON.stringify(list, undefined, 2)}\n`);
+
+  // The finest take longest, so they come first and the others fill the gaps.
+  const missing = levels.filter(level => !isCurrent(level)).reverse();
+  const children = Math.min(availableParallelism(), missing.length);
+  await Promise.all(
+    Array.from({length: children}, () =>
+      makeInChild(missing, ({level, file, seconds}) => {
+        process.stderr.write(`> table ${level}: ${seconds.toFixed(1)} s\n`);
+        add(level, file);
+        save();
       }),
-    );
-    await pool.destroy();
-  }
-  put(LIST, JSON.stringify(list, undefined, 2));
+    ),
+  );
+  save();
   const wanted = new Set(Object.values(list.files));
-  for (const file of readdirSync(FOLDER)) {
-    if (/^multipole-.*\.bin$/.test(file) && !wanted.has(file)) rmSync(join(FOLDER, file));
+  for (const file of readdirSync(TABLES)) {
+    if (/^multipole-.*\.bin/.test(file) && !wanted.has(file)) rmSync(join(TABLES, file));
   }
 }
+
+/** By level: of its parameters, the sources of the tables and the library of decompositions. */
+function digestsNow(): Record<string, string> {
+  const sources = readdirSync(SOURCES)
+    // What it says of a level is in the parameters, and other levels do not depend on it.
+    .filter(file => file !== 'levels.ts')
+    .sort()
+    .flatMap(file => [file, readFileSync(join(SOURCES, file))]);
+  const {version} = JSON.parse(readFileSync(DECOMPOSITIONS, 'utf8')) as {version: string};
+  return Object.fromEntries(
+    levels.map(level => [level.name, shortDigest(JSON.stringify(level), version, ...sources)]),
+  );
+}
+
+function listBefore(): TableList {
+  const path = join(TABLES, TABLE_LIST);
+  if (!existsSync(path)) return {files: {}, digests: {}};
+  return JSON.parse(readFileSync(path, 'utf8')) as TableList;
+}
+
+function isWhole(level: string, file: string): boolean {
+  const path = join(TABLES, file);
+  return existsSync(path) && tableFile(level, readFileSync(path)) === file;
+}
+
+/** Takes levels from a list that children share until none is left. */
+function makeInChild(waiting: Level[], done: (table: TableDone) => void): Promise<void> {
+  const child = fork('server/cli/build-table.ts', {stdio: ['ignore', 2, 2, 'ipc']});
+  const next = (): void => {
+    const level = waiting.shift();
+    if (level) child.send(level.name);
+    else child.disconnect();
+  };
+  child.on('message', (table: TableDone) => {
+    done(table);
+    next();
+  });
+  next();
+  return new Promise((resolve, reject) => {
+    child.on('error', reject);
+    child.on('exit', code => {
+      if (code === 0) resolve();
+      else reject(new Error(`a table could not be made: ended with ${code}`));
+    });
+  });
+}
+
+if (process.argv[1]?.endsWith('build-tables.ts')) await buildTables();
