@@ -79,7 +79,8 @@ export function readTable(bytes: Uint8Array): {
   const text = new TextDecoder().decode(bytes.subarray(PREFIX, PREFIX + textLength));
   // Written by `writeTable`, and named by its digest.
   const head = JSON.parse(text) as TableHead;
-  const own = bytes.slice(PREFIX + textLength).buffer;
+  // A copy, so that it is aligned; the `slice` of a Buffer would be none.
+  const own = new Uint8Array(bytes.subarray(PREFIX + textLength)).buffer;
   const values = head.level.precision === 'single' ? new Float32Array(own) : new Float64Array(own);
   return {head, values};
 }
