@@ -1,0 +1,152 @@
+import {Forms} from '../../server/engine/forms.ts';
+import {createHeap, Heap} from '../../server/engine/heap.ts';
+import {KeptForms} from '../../server/engine/kept-forms.ts';
+import {blockCount, computeBlock} from '../../server/engine/evaluate.ts';
+import type {FieldColumn, FieldJob, Job} from '../../server/engine/jobs.ts';
+import {compiledKernels} from '../../server/engine/kernels/compiled-kernels.ts';
+import {POSITION_COLUMNS} from '../../server/engine/kernels/layout.ts';
+import {instantiate, loadKernels} from '../../server/engine/kernels/load.ts';
+import {Arena} from '../../server/engine/multipole/arena.ts';
+import {SCRATCH} from '../../server/engine/multipole/kernels.ts';
+import {beginningOf, type MultipoleJob} from '../../server/engine/multipole/multipole-job.ts';
+import {advance} from '../../server/engine/multipole/run.ts';
+import {chargeColumns} from '../../server/engine/sources/charge-columns.ts';
+import type {Workplace} from '../../server/engine/workplace.ts';
+
+/** Positions [m], and charges [C] there. */
+export interface Points {
+  readonly x: Float64Array;
+  readonly y: Float64Array;
+  readonly z: Float64Array;
+}
+export interface Charges extends Points {
+  readonly charge: Float64Array;
+}
+
+export interface Asked {
+  readonly charges: Charges;
+  readonly targets: Points;
+  readonly tolerance?: number;
+  readonly isField?: boolean;
+  /** Where the charges may be known by. */
+  readonly digest?: string;
+  readonly changes?: Partial<MultipoleJob>;
+}
+
+export interface Done {
+  readonly method: 'direct' | 'multipole';
+  readonly job: Job;
+  /** V, Eₓ, E_y, E_z in SI, NaN where masked. */
+  readonly columns: readonly Float64Array[];
+  readonly hits: number;
+  readonly misses: number;
+  /** [ms] of processor time, by step: phase and level. */
+  readonly steps: readonly {readonly name: string; readonly milliseconds: number}[];
+}
+
+const NEVER = (): boolean => false;
+
+/** The engine on one thread, below contract and JSON: for sums larger than a request may be. */
+export function createWorkshop(bytes = 2 ** 31) {
+  const module = loadKernels();
+  if (!module) throw new Error('expected kernels; npm run build makes them');
+  const heap = new Heap(createHeap(bytes));
+  const exports = instantiate(module, heap.memory);
+  if (!exports) throw new Error('expected memory for kernels');
+  let lastTag = 0;
+  let lastFormTag = 0;
+  const kept = new KeptForms(heap, 2 ** 29);
+  const multipole = {exports, scratch: heap.allocate(-1_000_000, SCRATCH)};
+  const workplaceOf = (tag: number): Workplace => ({
+    memory: heap.memoryOf(tag),
+    compiled: compiledKernels(exports),
+    multipole,
+  });
+
+  function fieldJob({charges, targets, tolerance, isField = true}: Asked, tag: number): FieldJob {
+    const memory = heap.memoryOf(tag);
+    const columns = chargeColumns(charges.x.length, memory);
+    columns.x.set(charges.x);
+    columns.y.set(charges.y);
+    columns.z.set(charges.z);
+    columns.q.set(charges.charge);
+    const count = targets.x.length;
+    const values = memory(POSITION_COLUMNS * count);
+    [targets.x, targets.y, targets.z].forEach((column, n) => {
+      values.set(column, n * count);
+    });
+    const names: FieldColumn[] = isField
+      ? ['potential', 'fieldX', 'fieldY', 'fieldZ']
+      : ['potential'];
+    const out = memory(names.length * count);
+    const blocks = Array.from({length: Math.ceil(count / 4096)}, (_, n) => 4096 * n);
+    return {
+      kind: 'field',
+      charges: columns,
+      starts: [0, charges.x.length],
+      targets: {kind: 'points', values, count, address: memory.addressOf(values)},
+      count,
+      sum: isField ? 'field' : 'potential',
+      bounds: 'none',
+      columns: names,
+      relativePermittivity: 1,
+      symbols: {charge: 'C', potential: 'V', field: 'V/m', fieldGradient: 'V/m²'},
+      coincidenceDistance: 0,
+      onCoincidence: 'mask',
+      blocks: [...blocks, count],
+      out,
+      outAddress: memory.addressOf(out),
+      ...(tolerance !== undefined && {tolerance}),
+    };
+  }
+
+  function compute(asked: Asked): Done {
+    const tag = ++lastTag;
+    const scratch = ++lastTag;
+    const hold = kept.hold(['table:', ...(asked.digest ? [`tree:${asked.digest}`] : [])]);
+    const forms = new Forms(hold.known, heap, () => --lastFormTag);
+    const steps: {name: string; milliseconds: number}[] = [];
+    const timed = <T>(name: string, step: () => T): T => {
+      const start = process.cpuUsage();
+      const value = step();
+      const {user, system} = process.cpuUsage(start);
+      steps.push({name, milliseconds: (user + system) / 1000});
+      return value;
+    };
+    try {
+      const field = timed('pack', () => fieldJob(asked, tag));
+      let job: Job = field;
+      if (asked.tolerance !== undefined) {
+        const {x, y, z, q, count} = field.charges;
+        const part = {count, x, y, z, q, ranges: [0, count], digest: asked.digest};
+        job = {...beginningOf(field, [part], 2e9), ...asked.changes};
+      }
+      for (;;) {
+        const current: Job = job;
+        const name: string = current.kind === 'multipole' ? current.phase : 'direct';
+        timed(name, () => {
+          for (let block = 0; block < blockCount(current); block++) {
+            computeBlock(current, block, NEVER, workplaceOf(scratch));
+            heap.release(scratch);
+          }
+        });
+        if (current.kind !== 'multipole' || current.phase === 'done') break;
+        const tools = {...multipole, arena: new Arena(heap, tag), forms, stop: NEVER};
+        job = timed(`after ${name}`, () => advance(current, tools));
+      }
+      const columns = field.columns.map((_, n) =>
+        field.out.slice(n * field.count, (n + 1) * field.count),
+      );
+      const method = job.kind === 'multipole' ? 'multipole' : 'direct';
+      const {hits, misses} = forms.report;
+      hold.add(forms.report);
+      return {method, job, columns, hits, misses, steps};
+    } finally {
+      heap.release(tag);
+      heap.release(scratch);
+      hold.release();
+    }
+  }
+
+  return {heap, kept, compute};
+}
