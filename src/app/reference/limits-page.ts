@@ -1,7 +1,11 @@
 import {ChangeDetectionStrategy, Component} from '@angular/core';
+import {MULTIPOLE_PAIRS_PER_POINT} from '../../../shared/pricing';
+import {NumberText} from '../format/number-text';
+import {fixed} from '../format/numbers';
 
 @Component({
   selector: 'app-limits-page',
+  imports: [NumberText],
   template: `
     <h1 tabindex="-1">Cost and limits</h1>
     <p>
@@ -22,6 +26,13 @@ import {ChangeDetectionStrategy, Component} from '@angular/core';
           <td>charges × targets; twice that with the gradient</td>
         </tr>
         <tr>
+          <td>The same to a tolerance, by the multipole method</td>
+          <td>
+            a fixed number of pairs for every charge and every target: at present
+            <app-number [value]="perPoint" />
+          </td>
+        </tr>
+        <tr>
           <td>Forces</td>
           <td>every charge with the charges of all other bodies, and with every probe</td>
         </tr>
@@ -39,6 +50,11 @@ import {ChangeDetectionStrategy, Component} from '@angular/core';
         </tr>
       </tbody>
     </table>
+    <p>
+      Whether a call with a tolerance runs by the multipole method follows from its shape and its
+      options alone, so that the same request always costs the same. Where that method is not the
+      quicker one, the call is a direct sum and costs one.
+    </p>
     <h2>Who may spend</h2>
     <ul>
       <li>
@@ -78,10 +94,12 @@ import {ChangeDetectionStrategy, Component} from '@angular/core';
   changeDetection: ChangeDetectionStrategy.OnPush,
 })
 export class LimitsPage {
+  protected readonly perPoint = fixed(MULTIPOLE_PAIRS_PER_POINT, 0);
   protected readonly rows = [
     {what: 'Body of a request', limit: '8 MiB'},
     {what: 'Charges of one body, points of one list', limit: '100 000'},
     {what: 'Pairs of one call', limit: '2 000 000 000'},
+    {what: 'Tolerance', limit: '1e-9 to 1e-3'},
     {what: 'Rows of an answer in JSON', limit: '200 000'},
     {what: 'Bodies in a call for forces', limit: '200'},
     {what: 'Computed at once, without a worker', limit: 'up to 50 000 pairs'},
