@@ -59,10 +59,10 @@ export class Heap {
     return this.memory.buffer.byteLength;
   }
 
-  /** [bytes] handed out at the moment */
+  /** [bytes] handed out to calls at the moment; what is kept from call to call has tags below 0 */
   get allocated(): number {
     let lines = 0;
-    this.#forEach((_tag, start, end) => (lines += end - start));
+    this.#forEach((tag, start, end) => (lines += tag > 0 ? end - start : 0));
     return LINE * lines;
   }
 

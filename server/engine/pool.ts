@@ -58,7 +58,7 @@ export interface Engine {
   warmUp(): Promise<void>;
   /** Calls in the threads or waiting for them, and how many there may be. */
   load(): {readonly queued: number; readonly capacity: number};
-  /** [bytes] of the heap that calls and kept forms hold at the moment, and the latter alone */
+  /** [bytes] of the heap that calls hold at the moment, and kept forms */
   memory(): {readonly allocated: number; readonly kept: number; readonly capacity: number};
   close(): Promise<void>;
 }

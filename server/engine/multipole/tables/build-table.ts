@@ -1,5 +1,13 @@
-import {compress, forBlocks, type Basis} from './compression.ts';
-import {corner, dense, product, submatrix, transposed, type Dense} from './dense.ts';
+import {compress, forBlocks, type Basis, type Compression} from './compression.ts';
+import {
+  corner,
+  dense,
+  squareSum,
+  submatrix,
+  timesTransposed,
+  transposed,
+  type Dense,
+} from './dense.ts';
 import {byParity, harmonicCount} from './harmonics.ts';
 import type {Level} from './levels.ts';
 import {offsetClasses, reflectionsOf, signCount} from './offsets.ts';
@@ -177,30 +185,35 @@ interface FarBlocks {
 
 /** The translations of all offsets, compressed, and how much of each the level needs. */
 function farBlocks(
-  level: Level,
+  {degree, separation, compression}: Level,
   parities: readonly number[][],
-  {sources, targets, total}: ReturnType<typeof compress>,
+  {sources, targets, nearest}: Compression,
 ): FarBlocks[] {
-  const n = harmonicCount(level.degree);
-  const allowed = level.compression ** 2 * total;
-  const offsets = offsetClasses(level.separation);
+  const n = harmonicCount(degree);
   // What no offset needs is not even computed.
-  const tail = Math.sqrt(allowed / 400 / n);
+  const tail = compression * Math.sqrt(nearest / 400 / n);
   const factorsOf = (side: readonly Basis[]): Dense[] =>
-    side.map(({factor, sizes}) => corner(factor, factor.rows, countAbove(sizes, tail)));
-  const left = factorsOf(targets).map(transposed);
+    side.map(({factor, sizes}) => transposed(corner(factor, factor.rows, countAbove(sizes, tail))));
+  const left = factorsOf(targets);
   const right = factorsOf(sources);
-  return offsets.map(offset => {
-    const matrix = multipoleToLocal(level.degree, offset);
+  let total = 0;
+  const all = offsetClasses(separation).map(offset => {
+    const matrix = multipoleToLocal(degree, offset);
     const mask = reflectionsOf(offset);
-    const blocks: (Dense | undefined)[] = [];
+    const blocks: (Dense | undefined)[] = Array.from({length: 64});
     forBlocks(mask, (a, b) => {
-      const block = submatrix(matrix, n, parities[a], parities[b]);
-      blocks[8 * a + b] = product(product(left[a], block), right[b]);
+      const block = transposed(submatrix(matrix, n, parities[a], parities[b]));
+      const compressed = timesTransposed(timesTransposed(left[a], block), right[b]);
+      blocks[8 * a + b] = compressed;
+      total += signCount(mask) * squareSum(compressed);
     });
-    const limit = sizeLimit(blocks, targets, sources, allowed / offsets.length / signCount(mask));
+    return {offset, mask, blocks};
+  });
+  const allowed = (compression ** 2 * total) / all.length;
+  return all.map(({offset, mask, blocks}) => {
+    const limit = sizeLimit(blocks, targets, sources, allowed / signCount(mask));
     const kept = (side: readonly Basis[]): number[] =>
-      side.map(({sizes}) => keptCount(sizes, limit));
+      side.map(({sizes}) => ROW_UNIT * keptUnits(sizes, limit));
     return {offset, blocks, rows: kept(targets), columns: kept(sources)};
   });
 }
@@ -209,8 +222,8 @@ const countAbove = (sizes: readonly number[], limit: number): number =>
   sizes.filter(size => size >= limit).length;
 
 /** In whole row units, up or down: what that takes away is counted too. */
-const keptCount = (sizes: readonly number[], limit: number): number =>
-  ROW_UNIT * Math.round(countAbove(sizes, limit) / ROW_UNIT);
+const keptUnits = (sizes: readonly number[], limit: number): number =>
+  Math.round(countAbove(sizes, limit) / ROW_UNIT);
 
 /** The largest limit on singular values below which no more than `allowed` is lost. */
 function sizeLimit(
@@ -220,19 +233,14 @@ function sizeLimit(
   allowed: number,
 ): number {
   const candidates = targets.flatMap(({sizes}) => sizes).sort((a, b) => a - b);
+  const losses = blocks.map(block => block && lossesOf(block));
   const lost = (limit: number): number => {
-    let sum = 0;
-    blocks.forEach((block, index) => {
-      if (!block) return;
-      const rows = keptCount(targets[index >> 3].sizes, limit);
-      const columns = keptCount(sources[index & 7].sizes, limit);
-      for (let i = 0; i < block.rows; i++) {
-        for (let j = i < rows ? columns : 0; j < block.columns; j++) {
-          sum += block.values[i * block.columns + j] ** 2;
-        }
-      }
-    });
-    return sum;
+    const rows = targets.map(({sizes}) => keptUnits(sizes, limit));
+    const columns = sources.map(({sizes}) => keptUnits(sizes, limit));
+    return losses.reduce(
+      (sum, own, index) => sum + (own ? own(rows[index >> 3], columns[index & 7]) : 0),
+      0,
+    );
   };
   let low = 0;
   let high = candidates.length;
@@ -242,4 +250,30 @@ function sizeLimit(
     else high = middle;
   }
   return candidates[low];
+}
+
+/** Σ of squares outside the first rows and columns, both in row units. */
+function lossesOf({rows, columns, values}: Dense): (rows: number, columns: number) => number {
+  const down = Math.ceil(rows / ROW_UNIT);
+  const across = Math.ceil(columns / ROW_UNIT);
+  // Sums of what is lost and not differences of what is kept, which would have no digits left.
+  const right = new Float64Array((down + 1) * (across + 1));
+  for (let i = 0; i < rows; i++) {
+    for (let j = 0; j < columns; j++) {
+      const unit = ((i / ROW_UNIT) | 0) * (across + 1) + ((j / ROW_UNIT) | 0);
+      right[unit] += values[i * columns + j] ** 2;
+    }
+  }
+  // Of unit row i: all from column j on.
+  for (let i = 0; i < down; i++) {
+    for (let j = across - 1; j >= 0; j--) {
+      right[i * (across + 1) + j] += right[i * (across + 1) + j + 1];
+    }
+  }
+  return (keptRows, keptColumns) => {
+    let sum = 0;
+    const from = Math.min(keptColumns, across);
+    for (let i = 0; i < down; i++) sum += right[i * (across + 1) + (i < keptRows ? from : 0)];
+    return sum;
+  };
 }

@@ -1,6 +1,6 @@
 import type {Table} from './build-table.ts';
 import type {Level} from './levels.ts';
-import type {Operator} from './operator.ts';
+import {dataLength, type Operator} from './operator.ts';
 
 /** Where an operator lies in a table file. */
 export interface StoredOperator {
@@ -31,14 +31,14 @@ const PREFIX = 8;
 
 /** The bytes of a table file: the same for the same table. */
 export function writeTable(table: Table): Uint8Array {
-  const numbers: (readonly number[])[] = [];
+  const numbers: Float64Array[] = [];
   let length = 0;
   const store = (operator: Operator & Partial<StoredOperator>): StoredOperator => {
-    const {groups, data, mask = 0, inputLength = 0, moves = [], offset = []} = operator;
+    const {groups, parts, mask = 0, inputLength = 0, moves = [], offset = []} = operator;
     const start = length;
-    numbers.push(data);
-    length += data.length;
-    return {groups, start, length: data.length, mask, inputLength, moves, offset};
+    numbers.push(...parts);
+    length += dataLength(operator);
+    return {groups, start, length: length - start, mask, inputLength, moves, offset};
   };
   const {level, harmonicStarts, sourceStarts, targetStarts, compress, expand, up, down, far} =
     table;

@@ -3,8 +3,6 @@ import {harmonicCount, harmonicIndex, irregularHarmonics, regularHarmonics} from
 
 /** Square matrices over the harmonics of degree ≤ p, row by row. */
 
-type Complex = readonly [number, number];
-
 /**
  * From the multipoles of a box to the local expansion of another of the same size, `shift` box sizes
  * away:  ι_j(shift + x) = Σ_i T_ij ρ_i(x).
@@ -15,10 +13,19 @@ type Complex = readonly [number, number];
 export function multipoleToLocal(p: number, shift: readonly number[]): Float64Array {
   const n = harmonicCount(p);
   const out = new Float64Array(n * n);
-  const far = irregularHarmonics(2 * p, shift[0], shift[1], shift[2]);
+  const far = complexHarmonics(2 * p, irregularHarmonics(2 * p, shift[0], shift[1], shift[2]));
+  const norms = normalisations(2 * p);
   for (let l = 0; l <= p; l++) {
-    for (let k = 0; k <= p; k++) {
-      for (let m = 0; m <= l; m++) addColumns(out, n, far, l, m, k);
+    for (let k = 0; k <= l; k++) {
+      for (let m = 0; m <= l; m++) addColumns(out, n, far, norms, l, m, k);
+    }
+  }
+  // ι_lm is ρ_lm(∇) of 1/r but for a factor, so to exchange source and target is to turn ∇ round.
+  for (let i = 0, l = 0; i < n; i++) {
+    if (i === (l + 1) ** 2) l++;
+    for (let j = 0, k = 0; j < l * l; j++) {
+      if (j === (k + 1) ** 2) k++;
+      out[n * i + j] = (l + k) % 2 === 1 ? -out[n * j + i] : out[n * j + i];
     }
   }
   return out;
@@ -28,60 +35,75 @@ export function multipoleToLocal(p: number, shift: readonly number[]): Float64Ar
 function addColumns(
   out: Float64Array,
   n: number,
-  far: Float64Array,
+  {re, im}: ComplexHarmonics,
+  norms: Float64Array,
   l: number,
   m: number,
   k: number,
 ): void {
-  const scale = m > 0 ? Math.SQRT2 : 1;
+  const both = m > 0 ? Math.SQRT2 : 1;
+  const scale = (k % 2 === 1 ? -both : both) / norms[harmonicIndex(l, m)];
   const cosine = harmonicIndex(l, m);
   const sine = harmonicIndex(l, -m);
   for (let q = 0; q <= k; q++) {
-    const plus = coefficient(far, l, m, k, q);
-    let cosineRow: Complex = plus;
-    let sineRow: Complex = [0, 0];
-    if (q > 0) {
-      const sign = q % 2 === 1 ? -1 : 1;
-      const minus = coefficient(far, l, m, k, -q);
-      const [a, b] = plus;
-      const [c, d] = [sign * minus[0], sign * minus[1]];
-      cosineRow = [(a + c) / Math.SQRT2, (b + d) / Math.SQRT2];
-      sineRow = [(b - d) / Math.SQRT2, (c - a) / Math.SQRT2];
-    }
+    // The factor of the conjugate of the complex ρ_kq in the complex ι_lm.
+    const own = scale / norms[harmonicIndex(k, q)];
+    const at = harmonicIndex(l + k, m + q);
+    const a = own * norms[at] * re[at];
+    const b = own * norms[at] * im[at];
     const row = n * harmonicIndex(k, q);
-    out[row + cosine] = scale * cosineRow[0];
-    if (m > 0) out[row + sine] = scale * cosineRow[1];
-    if (q === 0) continue;
-    const sineStart = n * harmonicIndex(k, -q);
-    out[sineStart + cosine] = scale * sineRow[0];
-    if (m > 0) out[sineStart + sine] = scale * sineRow[1];
+    if (q === 0) {
+      out[row + cosine] = a;
+      if (m > 0) out[row + sine] = b;
+      continue;
+    }
+    const opposite = harmonicIndex(l + k, m - q);
+    const signed = (q % 2 === 1 ? -own : own) * norms[opposite];
+    const c = signed * re[opposite];
+    const d = signed * im[opposite];
+    const sineRow = n * harmonicIndex(k, -q);
+    out[row + cosine] = (a + c) * Math.SQRT1_2;
+    out[sineRow + cosine] = (b - d) * Math.SQRT1_2;
+    if (m === 0) continue;
+    out[row + sine] = (b + d) * Math.SQRT1_2;
+    out[sineRow + sine] = (c - a) * Math.SQRT1_2;
   }
 }
 
-/** The factor of the conjugate of the complex ρ_kq in the complex ι_lm, normalised. */
-function coefficient(far: Float64Array, l: number, m: number, k: number, q: number): Complex {
-  const ratio = normalisation(l + k, m + q) / (normalisation(l, m) * normalisation(k, q));
-  const factor = k % 2 === 1 ? -ratio : ratio;
-  const [re, im] = complexHarmonic(far, l + k, m + q);
-  return [factor * re, factor * im];
+/** Complex harmonics with the phase (−1)^m, by the numbers of the real ones. */
+interface ComplexHarmonics {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
 }
 
-function complexHarmonic(real: Float64Array, l: number, m: number): Complex {
-  if (m === 0) return [real[harmonicIndex(l, 0)], 0];
-  const order = Math.abs(m);
-  const re = real[harmonicIndex(l, order)] / Math.SQRT2;
-  const im = real[harmonicIndex(l, -order)] / Math.SQRT2;
-  if (m > 0) return [re, im];
-  const sign = order % 2 === 1 ? -1 : 1;
-  return [sign * re, -sign * im];
+function complexHarmonics(p: number, real: Float64Array): ComplexHarmonics {
+  const re = new Float64Array(real.length);
+  const im = new Float64Array(real.length);
+  for (let l = 0; l <= p; l++) {
+    re[harmonicIndex(l, 0)] = real[harmonicIndex(l, 0)];
+    for (let m = 1; m <= l; m++) {
+      const plus = harmonicIndex(l, m);
+      const minus = harmonicIndex(l, -m);
+      const sign = m % 2 === 1 ? -1 : 1;
+      re[plus] = real[plus] * Math.SQRT1_2;
+      im[plus] = real[minus] * Math.SQRT1_2;
+      re[minus] = sign * re[plus];
+      im[minus] = -sign * im[plus];
+    }
+  }
+  return {re, im};
 }
 
-const factorials = [1];
-
-/** √((l − m)! (l + m)!) */
-function normalisation(l: number, m: number): number {
-  for (let i = factorials.length; i <= l + Math.abs(m); i++) factorials[i] = i * factorials[i - 1];
-  return Math.sqrt(factorials[l - m]) * Math.sqrt(factorials[l + m]);
+/** √((l − m)! (l + m)!) by the numbers of the harmonics. */
+function normalisations(p: number): Float64Array {
+  const factorials = [1];
+  for (let i = 1; i <= 2 * p; i++) factorials.push(i * factorials[i - 1]);
+  const roots = factorials.map(Math.sqrt);
+  const out = new Float64Array(harmonicCount(p));
+  for (let l = 0; l <= p; l++) {
+    for (let m = -l; m <= l; m++) out[harmonicIndex(l, m)] = roots[l - m] * roots[l + m];
+  }
+  return out;
 }
 
 /**
@@ -114,12 +136,7 @@ export function childToParent(p: number, shift: readonly number[]): Float64Array
 }
 
 /** out += factor · a bᵀ */
-export function addOuter(
-  out: Float64Array,
-  a: Float64Array,
-  b: Float64Array,
-  factor: number,
-): void {
+function addOuter(out: Float64Array, a: Float64Array, b: Float64Array, factor: number): void {
   const n = a.length;
   for (let i = 0; i < n; i++) {
     const scaled = factor * a[i];
