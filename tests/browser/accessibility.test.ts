@@ -76,6 +76,7 @@ for (const isDark of [false, true]) {
       });
       for (const name of [
         'From the rim to the bracket',
+        'Spray of 50 000 charges',
         'Forces in the booth',
         'Moments of bell',
       ]) {

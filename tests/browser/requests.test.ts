@@ -1,7 +1,7 @@
 import {readFileSync} from 'node:fs';
 import type {Browser} from '@playwright/test';
 import {afterAll, beforeAll, describe, expect, test} from 'vitest';
-import type {ConsoleUsage} from '../../shared/api.ts';
+import type {ConsoleUsage, FieldRequest} from '../../shared/api.ts';
 import {startService, type TestService} from '../support/service.ts';
 import {chooseSample, openBrowser, run, visit, visitAs, writeRequest} from './visit.ts';
 
@@ -72,6 +72,7 @@ describe('requests', () => {
     const samples = [
       ['Bell cup and bracket', 'app-field-picture'],
       ['Cloud of 12 000 droplets', 'app-field-picture'],
+      ['Spray of 50 000 charges above a panel', 'app-field-picture'],
       ['From the rim to the bracket', 'app-path-chart svg'],
       ['Forces in the booth', 'app-body-tables table'],
       ['Moments of bell and bracket', 'app-body-tables table'],
@@ -117,6 +118,46 @@ describe('requests', () => {
     await page.getByRole('application', {name: /Map of the field strength/}).waitFor();
     await page.getByRole('button', {name: 'Numbers as a table'}).click();
     await page.getByRole('columnheader', {name: 'V, kV'}).waitFor();
+    expect(faults).toEqual([]);
+    await close();
+  });
+
+  test('50 000 charges to a tolerance: the method beforehand, the estimate with the answer', async () => {
+    const {page, faults, close} = await visitAs('developer', browser, service, {path: '/requests'});
+    await chooseSample(page, 'Spray of 50 000 charges above a panel');
+    const estimate = page.locator('app-request-cost .title-block:not(.stale)');
+    await estimate.getByText('Multipole').waitFor();
+    await estimate.getByText(/≈/).waitFor();
+
+    // A change by hand in so long a text is handed on, and all of it is sent.
+    await page.locator('.cm-line', {hasText: '"tolerance": 0.0001'}).click();
+    await page.keyboard.press('End');
+    for (const key of ['ArrowLeft', 'ArrowLeft', 'Backspace', '2']) await page.keyboard.press(key);
+    await expect.poll(() => page.locator('.title-block.stale').count()).toBe(1);
+    await estimate.getByText('Multipole').waitFor();
+    const [sent] = await Promise.all([
+      page.waitForRequest('**/console/requests/fields'),
+      run(page),
+    ]);
+    const {bodies, accuracy} = sent.postDataJSON() as FieldRequest;
+    expect(bodies.reduce((sum, {charges}) => sum + charges.charge.length, 0)).toBe(50_000);
+    expect(accuracy).toEqual({tolerance: 2e-4});
+
+    await page.locator('canvas[data-painted]').waitFor();
+    await page.getByText('of 50000 charges lie within').waitFor();
+    const facts = page.locator('app-answer-facts');
+    const valueOf = (label: string): Promise<string> =>
+      facts
+        .locator('dl > div')
+        .filter({has: page.getByText(label, {exact: true})})
+        .locator('dd')
+        .innerText();
+    expect(await valueOf('Method')).toBe('Multipole');
+    expect(await valueOf('Tolerance asked')).toContain('2 × 10');
+    expect(await valueOf('Estimated error of V')).toMatch(/^[\d.]+ × 10/);
+    expect(await valueOf('Estimated error of E')).toMatch(/largest/);
+    expect(await valueOf('Reused')).toMatch(/^\d of [1-9]\d* prepared forms$/);
+    await facts.getByText('Estimated at 256 targets').waitFor();
     expect(faults).toEqual([]);
     await close();
   });
