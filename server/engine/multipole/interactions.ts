@@ -52,15 +52,10 @@ export function targetTree(
   splitting: Splitting,
 ): TargetTree {
   const {count} = targets;
-  const column = (values: Float64Array): Float64Array => {
-    const out = arena.doubles(count + COLUMN_PADDING);
-    out.set(values.subarray(0, count));
-    return out;
-  };
-  const [x, y, z] = [targets.x, targets.y, targets.z].map(column);
+  const columns = [0, 1, 2].map(() => arena.doubles(count + COLUMN_PADDING));
+  const [x, y, z] = columns;
   const order = arena.integers(count);
-  for (let i = 0; i < count; i++) order[i] = i;
-  const points = sortedPoints([x, y, z], order, count);
+  const points = sortedPoints([targets.x, targets.y, targets.z], columns, order, sources.root);
   const boxes = new Boxes(sources.root, 0, count);
   const pairs = new NearPairs(boxes, points, sources, splitting, level.separation, slots);
   pairs.visit();

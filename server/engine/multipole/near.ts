@@ -8,6 +8,7 @@ import {targetPositions} from '../targets.ts';
 import {ownWorkplace} from '../workplace.ts';
 import type {TargetTree} from './interactions.ts';
 import type {MultipoleJob, Part, PartCharges, Work} from './multipole-job.ts';
+import {CHARGE_STRIDE} from './source-tree.ts';
 
 /** Evaluations of a piece of work: some 20 ms of them. */
 const PAIRS_OF_WORK = 8e6;
@@ -145,9 +146,9 @@ function nearCharges(
   heads.forEach((head, i) => {
     const index = chargeAt(own, sources.order[head]);
     for (const name of names) out[name][i] = charges[name][index];
+    const charge = sources.charges[CHARGE_STRIDE * head + 3] / sources.chargeScale;
     // What stands for charges that cancel is still there.
-    out.q[i] =
-      sources.q[head] === 0 && sources.members[head] > 1 ? Number.MIN_VALUE : sources.q[head];
+    out.q[i] = charge === 0 && sources.members[head] > 1 ? Number.MIN_VALUE : charge;
   });
   return {...out, largestRadius: charges.largestRadius};
 }

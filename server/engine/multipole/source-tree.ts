@@ -8,11 +8,10 @@ import {Boxes, sortedPoints, type Cube} from './boxes.ts';
 export interface SourceTree {
   readonly root: Cube;
   readonly count: number;
-  /** [m, m, m, C], sorted; padded by COLUMN_PADDING. */
-  readonly x: Float64Array;
-  readonly y: Float64Array;
-  readonly z: Float64Array;
-  readonly q: Float64Array;
+  /** x, y, z [m] and charge · chargeScale of one after the other, sorted and padded. */
+  readonly charges: Float64Array;
+  /** Charges are computed with in units near the largest: a power of two rounds nothing. */
+  readonly chargeScale: number;
   /** Which charge each was. */
   readonly order: Int32Array;
   readonly boxCount: number;
@@ -29,8 +28,6 @@ export interface SourceTree {
    * stands for as many. 1 elsewhere.
    */
   readonly members: Int32Array;
-  /** [C] the largest, of the sums too */
-  readonly largestCharge: number;
 }
 
 /** Numbers that vectors may read beyond the last point, and boxes beyond the last box. */
@@ -52,16 +49,11 @@ export function sourceTree(
   capacity: number,
 ): SourceTree {
   const {count} = charges;
-  const column = (values: Float64Array): Float64Array => {
-    const out = arena.doubles(count + COLUMN_PADDING);
-    out.set(values.subarray(0, count));
-    return out;
-  };
-  const [x, y, z, q] = [charges.x, charges.y, charges.z, charges.q].map(column);
+  const columns = [0, 1, 2, 3].map(() => new Float64Array(count));
+  const [x, y, z, q] = columns;
   const order = arena.integers(count);
-  for (let i = 0; i < count; i++) order[i] = i;
+  const points = sortedPoints([charges.x, charges.y, charges.z, charges.q], columns, order, root);
   const members = arena.integers(count).fill(1);
-  const points = sortedPoints([x, y, z, q], order, count);
   const boxes = new Boxes(root, 0, count);
   const levels = [0, 1];
   const leaves: number[] = [];
@@ -75,17 +67,21 @@ export function sourceTree(
     }
     leaves.push(box);
   }
-  let largestCharge = 0;
-  for (let i = 0; i < count; i++) largestCharge = Math.max(largestCharge, Math.abs(q[i]));
+  const chargeScale = scaleOf(q);
+  const packed = arena.doubles(CHARGE_STRIDE * (count + COLUMN_PADDING));
+  for (let i = 0, at = 0; i < count; i++, at += CHARGE_STRIDE) {
+    packed[at] = x[i];
+    packed[at + 1] = y[i];
+    packed[at + 2] = z[i];
+    packed[at + 3] = q[i] * chargeScale;
+  }
   const boxArray = arena.doubles(4 * (boxes.count + BOX_PADDING));
   boxArray.set(boxes.geometry.values);
   return {
     root,
     count,
-    x,
-    y,
-    z,
-    q,
+    charges: packed,
+    chargeScale,
     order,
     boxCount: boxes.count,
     boxes: boxArray,
@@ -95,8 +91,16 @@ export function sourceTree(
     levels,
     leaves: arena.keep(leaves),
     members,
-    largestCharge,
   };
+}
+
+/** Numbers of one charge: x, y, z and the charge. */
+export const CHARGE_STRIDE = 4;
+
+function scaleOf(charges: Float64Array): number {
+  let largest = 0;
+  for (let i = 0; i < charges.length; i++) largest = Math.max(largest, Math.abs(charges[i])); // eslint-disable-line @typescript-eslint/prefer-for-of -- an iterator takes ten times as long
+  return largest === 0 ? 1 : 2 ** -Math.max(-1000, Math.floor(Math.log2(largest)));
 }
 
 /** Lets one charge stand for all of a box, which are at one place. */

@@ -10,11 +10,11 @@ export function writeWords(arena: Arena, words: readonly number[]): number {
 
 /** Without expansions: `setExpansions` says where they lie once there are any. */
 export function writeSources(arena: Arena, tree: SourceTree): number {
-  const {x, y, z, q, boxes, ranges, children, octants} = tree;
-  const columns = [x, y, z, q, boxes, ranges, children, octants];
+  const {charges, boxes, ranges, children, octants} = tree;
+  const columns = [charges, boxes, ranges, children, octants];
   const words = arena.integers(EXPANSIONS + 3);
   const scale = new Float64Array(arena.buffer, words.byteOffset, 1);
-  scale[0] = chargeScale(tree);
+  scale[0] = tree.chargeScale;
   words.set(
     columns.map(({byteOffset}) => byteOffset),
     2,
@@ -23,7 +23,7 @@ export function writeSources(arena: Arena, tree: SourceTree): number {
 }
 
 /** Place of the addresses of expansions in the struct of sources. */
-const EXPANSIONS = 10;
+const EXPANSIONS = 7;
 
 /** Addresses of the expansions of a tree of sources. */
 export interface SourceExpansions {
@@ -39,11 +39,6 @@ export function setExpansions(
 ): void {
   const words = new Int32Array(arena.buffer, sourcesAddress, EXPANSIONS + 3);
   words.set([multipoles, compressed, zeros], EXPANSIONS);
-}
-
-/** Charges are computed with in units near the largest: a power of two, so nothing is rounded. */
-function chargeScale({largestCharge}: SourceTree): number {
-  return largestCharge === 0 ? 1 : 2 ** -Math.max(-1000, Math.floor(Math.log2(largestCharge)));
 }
 
 /** Where values at sorted targets are added to; the field is absent where it is not wanted. */

@@ -57,36 +57,41 @@ function hasNext(runs: Runs, targets: Targets): bool {
   return true;
 }
 
-/** Takes up to CAPACITY charges to `to`; returns how many. */
-function take(runs: Runs, sources: Sources, targets: Targets, to: usize): i32 {
-  let count = 0;
-  const chargeScale = sources.chargeScale;
-  while (count < CAPACITY && hasNext(runs, targets)) {
-    const end = min(runs.end, runs.at + CAPACITY - count);
-    let place = to + <usize>count * DOUBLE;
-    count += end - runs.at;
-    for (let i = <usize>runs.at << 3; i < <usize>end << 3; i += 8, place += DOUBLE) {
-      store<f64>(place, load<f64>(sources.x + i));
-      store<f64>(place, load<f64>(sources.y + i), 8);
-      store<f64>(place, load<f64>(sources.z + i), 16);
-      store<f64>(place, load<f64>(sources.q + i) * chargeScale, 24);
-    }
-    runs.at = end;
-  }
-  return count;
-}
-
-/** The same charges from the centre of a box, in its size, in single precision. */
-function shrink(from: usize, count: i32, box: usize, scale: f64, to: usize): void {
+/**
+ * Takes up to CAPACITY charges from the centre of a box, in its size, in single precision, and notes
+ * where each came from; returns how many.
+ */
+function take(
+  runs: Runs,
+  sources: Sources,
+  targets: Targets,
+  box: usize,
+  scale: f64,
+  to: usize,
+  origins: usize,
+): i32 {
   const centre = v128.load(box);
   const z = f64x2.replace_lane(f64x2.splat(0), 0, load<f64>(box, 16));
   const xyScale = f64x2.splat(scale);
   const zScale = f64x2.replace_lane(f64x2.splat(1), 0, scale);
-  for (let n = 0; n < count; n++, from += DOUBLE, to += SINGLE) {
-    const xy = f64x2.mul(f64x2.sub(v128.load(from), centre), xyScale);
-    const zq = f64x2.mul(f64x2.sub(v128.load(from, 16), z), zScale);
-    v128.store(to, single(xy, zq));
+  let count = 0;
+  while (count < CAPACITY && hasNext(runs, targets)) {
+    const end = min(runs.end, runs.at + CAPACITY - count);
+    let place = to + <usize>count * SINGLE;
+    let origin = origins + (<usize>count << 2);
+    count += end - runs.at;
+    const last = sources.charges + <usize>end * DOUBLE;
+    for (let from = sources.charges + <usize>runs.at * DOUBLE; from < last; from += DOUBLE) {
+      const xy = f64x2.mul(f64x2.sub(v128.load(from), centre), xyScale);
+      const zq = f64x2.mul(f64x2.sub(v128.load(from, 16), z), zScale);
+      v128.store(place, single(xy, zq));
+      store<usize>(origin, from);
+      place += SINGLE;
+      origin += 4;
+    }
+    runs.at = end;
   }
+  return count;
 }
 
 // @ts-ignore: decorator
@@ -167,14 +172,13 @@ function nearBoxSingle(
   const runs = changetype<Runs>(scratch);
   const sums = scratch + 32;
   const charges = sums + SUMS;
-  const shrunk = charges + CAPACITY * DOUBLE;
-  const notes = shrunk + CAPACITY * SINGLE;
+  const origins = charges + CAPACITY * SINGLE;
+  const notes = origins + CAPACITY * 4;
   begin(runs, targets, box);
   for (;;) {
-    const count = take(runs, sources, targets, charges);
+    const count = take(runs, sources, targets, at, scale, charges, origins);
     if (count == 0) return;
-    shrink(charges, count, at, scale, shrunk);
-    const last = shrunk + <usize>count * SINGLE;
+    const last = charges + <usize>count * SINGLE;
     for (let i = from; i < to; i += 4) {
       const place = <usize>i << 3;
       const tx = four(targets.x + place, cx, scale);
@@ -183,7 +187,7 @@ function nearBoxSingle(
       // Not memory.fill, which is a call out of WebAssembly.
       const zero = f64x2.splat(0);
       for (let at = sums; at < sums + SUMS; at += 16) v128.store(at, zero);
-      for (let start = shrunk; start < last; start += PART * SINGLE) {
+      for (let start = charges; start < last; start += PART * SINGLE) {
         const end = min(start + PART * SINGLE, last);
         let v = f32x4.splat(0);
         let ex = v;
@@ -217,7 +221,7 @@ function nearBoxSingle(
           }
         }
         for (let at = notes; at < note; at += NOTE) {
-          const charge = charges + ((load<usize>(at) - shrunk) << 1);
+          const charge = load<usize>(origins + ((load<usize>(at) - charges) >> 2));
           addClose(targets, i, to, load<i32>(at, 4), charge, scale, limit, sums);
         }
         pass(sums, v);
@@ -258,12 +262,11 @@ function nearBoxDouble(
   const to = load<i32>(targets.ranges + (<usize>box << 3), 4);
   const scale = 1 / sources.chargeScale;
   const runs = changetype<Runs>(scratch);
-  const charges = scratch + 32 + SUMS;
   begin(runs, targets, box);
-  for (;;) {
-    const count = take(runs, sources, targets, charges);
-    if (count == 0) return;
-    const last = charges + <usize>count * DOUBLE;
+  while (hasNext(runs, targets)) {
+    const charges = sources.charges + <usize>runs.at * DOUBLE;
+    const last = sources.charges + <usize>runs.end * DOUBLE;
+    runs.at = runs.end;
     for (let i = from; i < to; i += 2) {
       const place = <usize>i << 3;
       const tx = v128.load(targets.x + place);

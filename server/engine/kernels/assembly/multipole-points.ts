@@ -7,7 +7,7 @@ import {Sources, Table, Targets} from './multipole-structs';
 // for every degree above m. `places` say, in the same order, where in an expansion each number is.
 // Columns of points are padded, so that the vector of the last ones may reach beyond them.
 
-/** Adds the charges of a box to its multipoles. `scratch`: 16 bytes a number of an expansion, and 16. */
+/** Adds the charges of a box to its multipoles. `scratch`: 16 bytes a number of an expansion, and 64. */
 function charges<T>(sources: Sources, table: Table, box: i32, scratch: usize): void {
   const count = table.size;
   const p = table.degree;
@@ -23,18 +23,20 @@ function charges<T>(sources: Sources, table: Table, box: i32, scratch: usize): v
   const step = lanes<T>();
   const spare = scratch + (<usize>count << 4);
   for (let i = from; i < to; i += step) {
-    const px = local<T>(sources.x, i, cx, scale);
-    const py = local<T>(sources.y, i, cy, scale);
-    const pz = local<T>(sources.z, i, cz, scale);
-    let charge = local<T>(sources.q, i, 0, sources.chargeScale);
-    if (i + step > to) {
+    // Charges lie one after the other: their numbers are turned into vectors here.
+    for (let lane = 0; lane < step; lane++) {
+      const charge = sources.charges + (<usize>(i + lane) << 5);
+      const place = spare + <usize>lane * sizeof<T>();
+      store<T>(place, <T>((load<f64>(charge) - cx) * scale));
+      store<T>(place, <T>((load<f64>(charge, 8) - cy) * scale), 16);
+      store<T>(place, <T>((load<f64>(charge, 16) - cz) * scale), 32);
       // Beyond the last one is whatever comes next.
-      v128.store(spare, charge);
-      for (let lane = to - i; lane < step; lane++) {
-        store<T>(spare + <usize>lane * sizeof<T>(), <T>0);
-      }
-      charge = v128.load(spare);
+      store<T>(place, i + lane < to ? <T>load<f64>(charge, 24) : <T>0, 48);
     }
+    const px = v128.load(spare);
+    const py = v128.load(spare, 16);
+    const pz = v128.load(spare, 32);
+    const charge = v128.load(spare, 48);
     const square = v128.add<T>(
       v128.add<T>(v128.mul<T>(px, px), v128.mul<T>(py, py)),
       v128.mul<T>(pz, pz),

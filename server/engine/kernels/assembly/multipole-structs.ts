@@ -42,16 +42,14 @@ export class Table {
   far: usize;
 }
 
-/** Charges in the order of their tree, and its boxes. Columns and boxes are padded. */
+/** Charges in the order of their tree, and its boxes; both are padded. */
 // @ts-ignore: decorator
 @unmanaged
 export class Sources {
   /** What charges are multiplied by. */
   chargeScale: f64;
-  x: usize;
-  y: usize;
-  z: usize;
-  q: usize;
+  /** x, y, z [m] and the charge, already multiplied, of one after the other. */
+  charges: usize;
   /** Centre x, y, z and size of every box [m]. */
   boxes: usize;
   /** First charge, and the one after the last, of every box. */

@@ -5,7 +5,7 @@ import {Operator, Sources, Table, Targets} from './multipole-structs';
 // boxes at once as make good use of every number of a matrix that is read.
 
 /** Boxes that are translated together. */
-const TOGETHER = 4;
+const TOGETHER: usize = 4;
 const GROUP = 20;
 const MOVE = 40;
 
@@ -324,6 +324,14 @@ function gatherTwo<T>(inputs: usize, start: usize, bytes: usize, move: usize, to
 const ADDRESS = 4;
 const INPUTS = 32;
 
+/** Whether any of the boxes that begin at `box` has children. */
+function haveChildren(children: usize, box: i32, together: i32): bool {
+  for (let t = box; t < box + together; t++) {
+    if (load<i32>(children + (<usize>t << 3), 4) > 0) return true;
+  }
+  return false;
+}
+
 /** Multipoles of the parents `first … last − 1` from those of their children. */
 // @ts-ignore: decorator
 @inline
@@ -342,9 +350,10 @@ function upward<T>(
   const spare = outs + TOGETHER * ADDRESS;
   const gathered = (spare + 15) & ~15;
   const nowhere = gathered + TOGETHER * step;
-  for (let box = first; box < last; box += TOGETHER) {
-    const together = min(TOGETHER, last - box);
-    for (let t = 0; t < TOGETHER; t++) {
+  for (let box = first; box < last; box += <i32>TOGETHER) {
+    const together = min(<i32>TOGETHER, last - box);
+    if (!haveChildren(sources.children, box, together)) continue;
+    for (let t = 0; t < <i32>TOGETHER; t++) {
       if (t >= together) {
         store<usize>(outs + <usize>t * ADDRESS, nowhere);
         continue;
@@ -382,8 +391,8 @@ function compress<T>(
   const bytes = <usize>table.size * sizeof<T>();
   const kept = <usize>table.sourceSize * sizeof<T>();
   memory.fill(sources.compressed + <usize>first * kept, 0, <usize>(last - first) * kept);
-  for (let box = first; box < last; box += TOGETHER) {
-    for (let t = 0; t < TOGETHER; t++) {
+  for (let box = first; box < last; box += <i32>TOGETHER) {
+    for (let t = 0; t < <i32>TOGETHER; t++) {
       const out = sources.compressed + <usize>(box + t) * kept;
       store<usize>(scratch + <usize>t * ADDRESS, box + t < last ? out : scratch + 64);
     }
@@ -412,12 +421,12 @@ function farField<T>(
   const outs = inputs + TOGETHER * slots;
   const sums = (outs + TOGETHER * ADDRESS + 15) & ~15;
   const gathered = sums + TOGETHER * made;
-  for (let box = first; box < last; box += TOGETHER) {
-    const together = min(TOGETHER, last - box);
+  for (let box = first; box < last; box += <i32>TOGETHER) {
+    const together = min(<i32>TOGETHER, last - box);
     for (let at = inputs; at < outs; at += ADDRESS) store<usize>(at, sources.zeros);
     memory.fill(sums, 0, TOGETHER * made);
     let isAny = false;
-    for (let t = 0; t < TOGETHER; t++) store<usize>(outs + <usize>t * ADDRESS, sums + <usize>t * made);
+    for (let t = 0; t < <i32>TOGETHER; t++) store<usize>(outs + <usize>t * ADDRESS, sums + <usize>t * made);
     for (let t = 0; t < together; t++) {
       const starts = targets.farStarts + (<usize>(box + t) << 2);
       const end = load<i32>(starts, 4);
@@ -434,20 +443,20 @@ function farField<T>(
       const operator = changetype<Operator>(table.far + <usize>c * offsetof<Operator>());
       const step = <usize>operator.inputLength * size;
       let isUsed = false;
-      for (let t = 0; t < TOGETHER; t++) {
+      for (let t = 0; t < <i32>TOGETHER; t++) {
         const own = inputs + <usize>t * slots + <usize>c * INPUTS;
         for (let s = 0; s < operator.signs; s++) {
           if (load<usize>(own + <usize>s * ADDRESS) != sources.zeros) isUsed = true;
         }
       }
       if (!isUsed) continue;
-      for (let t = 0; t < TOGETHER; t++) {
+      for (let t = 0; t < <i32>TOGETHER; t++) {
         const own = inputs + <usize>t * slots + <usize>c * INPUTS;
         gather<T>(operator, own, gathered + <usize>t * step);
       }
       apply<T>(operator, gathered, step, outs);
     }
-    for (let t = 0; t < TOGETHER; t++) {
+    for (let t = 0; t < <i32>TOGETHER; t++) {
       const out = targets.locals + <usize>(box + t) * bytes;
       store<usize>(outs + <usize>t * ADDRESS, t < together ? out : gathered);
     }
@@ -468,39 +477,68 @@ function downward<T>(
   const operator = changetype<Operator>(table.down);
   const bytes = <usize>table.size * sizeof<T>();
   const outs = scratch;
-  const parts = scratch + TOGETHER * ADDRESS;
-  for (let box = first; box < last; box += TOGETHER) {
+  const children = outs + TOGETHER * ADDRESS;
+  const parts = children + INPUTS;
+  const nowhere = parts + TOGETHER * 8 * bytes;
+  for (let box = first; box < last; box += <i32>TOGETHER) {
+    const together = min(<i32>TOGETHER, last - box);
+    if (!haveChildren(targets.children, box, together)) continue;
     memory.fill(parts, 0, TOGETHER * 8 * bytes);
-    for (let t = 0; t < TOGETHER; t++) {
+    for (let t = 0; t < <i32>TOGETHER; t++) {
       store<usize>(outs + <usize>t * ADDRESS, parts + <usize>t * 8 * bytes);
     }
     apply<T>(operator, targets.locals + <usize>box * bytes, bytes, outs);
-    for (let t = 0; t < min(TOGETHER, last - box); t++) {
+    for (let t = 0; t < together; t++) {
       const own = targets.children + (<usize>(box + t) << 3);
       const child = load<i32>(own);
       const count = load<i32>(own, 4);
+      if (count == 0) continue;
+      for (let s: usize = 0; s < 8; s++) store<usize>(children + s * ADDRESS, nowhere);
       for (let c = child; c < child + count; c++) {
-        const s = load<i32>(targets.octants + (<usize>c << 2)) ^ 7;
-        addSigned<T>(
-          parts + <usize>t * 8 * bytes,
-          bytes,
-          s,
-          targets.locals + <usize>c * bytes,
-        );
+        const s = <usize>(load<i32>(targets.octants + (<usize>c << 2)) ^ 7);
+        store<usize>(children + s * ADDRESS, targets.locals + <usize>c * bytes);
       }
+      spread<T>(parts + <usize>t * 8 * bytes, bytes, children);
     }
   }
 }
 
-/** out += Σ_g (−1)^(g·s) part g */
-function addSigned<T>(parts: usize, bytes: usize, s: i32, out: usize): void {
-  for (let j: usize = 0; j < bytes; j += 16) {
-    let sum = v128.load(out + j);
-    for (let g = 0; g < 8; g++) {
-      const part = v128.load(parts + <usize>g * bytes + j);
-      sum = popcnt(g & s) & 1 ? v128.sub<T>(sum, part) : v128.add<T>(sum, part);
-    }
-    v128.store(out + j, sum);
+/** To the child with signs s is added Σ_g (−1)^(g·s) part g. */
+function spread<T>(parts: usize, bytes: usize, children: usize): void {
+  for (let at = parts; at < parts + bytes; at += 16) {
+    let a = v128.load(at);
+    let b = v128.load(at + bytes);
+    const a0 = v128.add<T>(a, b);
+    const a1 = v128.sub<T>(a, b);
+    a = v128.load(at + 2 * bytes);
+    b = v128.load(at + 3 * bytes);
+    const a2 = v128.add<T>(a, b);
+    const a3 = v128.sub<T>(a, b);
+    a = v128.load(at + 4 * bytes);
+    b = v128.load(at + 5 * bytes);
+    const a4 = v128.add<T>(a, b);
+    const a5 = v128.sub<T>(a, b);
+    a = v128.load(at + 6 * bytes);
+    b = v128.load(at + 7 * bytes);
+    const a6 = v128.add<T>(a, b);
+    const a7 = v128.sub<T>(a, b);
+    const j = at - parts;
+    const b0 = v128.add<T>(a0, a2);
+    const b2 = v128.sub<T>(a0, a2);
+    const b4 = v128.add<T>(a4, a6);
+    const b6 = v128.sub<T>(a4, a6);
+    addTo<T>(input(children, 0, j), v128.add<T>(b0, b4));
+    addTo<T>(input(children, 4, j), v128.sub<T>(b0, b4));
+    addTo<T>(input(children, 2, j), v128.add<T>(b2, b6));
+    addTo<T>(input(children, 6, j), v128.sub<T>(b2, b6));
+    const b1 = v128.add<T>(a1, a3);
+    const b3 = v128.sub<T>(a1, a3);
+    const b5 = v128.add<T>(a5, a7);
+    const b7 = v128.sub<T>(a5, a7);
+    addTo<T>(input(children, 1, j), v128.add<T>(b1, b5));
+    addTo<T>(input(children, 5, j), v128.sub<T>(b1, b5));
+    addTo<T>(input(children, 3, j), v128.add<T>(b3, b7));
+    addTo<T>(input(children, 7, j), v128.sub<T>(b3, b7));
   }
 }
 
