@@ -18,11 +18,12 @@ const ratio = (label: string, value: number): AccuracyFact => ({
   unit: null,
 });
 
-/** In the digits it was given in, of which there are few. */
-const asGiven = (value: number): WrittenNumber => {
-  const [mantissa, exponent] = value.toExponential().split('e');
+/** The tolerance asked, in the digits it was given in, of which there are few. */
+export function toleranceOf({accuracy}: Answer): WrittenNumber | null {
+  if (accuracy.tolerance === undefined) return null;
+  const [mantissa, exponent] = accuracy.tolerance.toExponential().split('e');
   return {digits: mantissa, exponent: Number(exponent)};
-};
+}
 
 /** Bounds or estimates, quantity by quantity; none if neither was asked for. */
 export function accuracyFacts(answer: Answer): AccuracyFact[] {
@@ -31,11 +32,8 @@ export function accuracyFacts(answer: Answer): AccuracyFact[] {
     const bounds = answer.bodies.flatMap(({forceBound}) => forceBound ?? []);
     return bounds.length === 0 ? [] : [bound('F', bounds, answer.units.force)];
   }
-  const {tolerance, estimated, reached} = answer.accuracy;
+  const {estimated, reached} = answer.accuracy;
   return [
-    ...(tolerance === undefined
-      ? []
-      : [{label: 'Tolerance asked', value: asGiven(tolerance), unit: null}]),
     ...(reached === undefined ? [] : [ratio('Reached', reached)]),
     ...estimatesOf(estimated),
     ...boundsOf(answer),

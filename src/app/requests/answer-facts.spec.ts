@@ -121,12 +121,12 @@ describe('the facts of an answer', () => {
       }),
     );
     expect(facts.get('Computed')).toBe('1.4s waited 12ms');
-    expect(facts.get('Reused')).toBe('3 of 4 prepared forms');
+    expect(facts.get('Prepared forms')).toBe('3 of 4 reused');
     expect(facts.get('Charged')).toBe('1000 pairs');
   });
 
   it('say nothing of reuse where nothing is kept', () => {
-    expect(shown(answer({})).facts.has('Reused')).toBe(false);
+    expect(shown(answer({})).facts.has('Prepared forms')).toBe(false);
   });
 
   it('give a saved picture the line of its own quantity', () => {

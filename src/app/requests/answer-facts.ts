@@ -4,7 +4,7 @@ import {duration} from '../format/durations';
 import {NumberText} from '../format/number-text';
 import {PairsText} from '../format/pairs-text';
 import {CopyButton} from '../states/copy-button';
-import {accuracyFacts, accuracyNote} from './accuracy-facts';
+import {accuracyFacts, accuracyNote, toleranceOf} from './accuracy-facts';
 import type {FinishedRun} from './answer-view';
 import {methodName} from './method-name';
 
@@ -18,6 +18,12 @@ import {methodName} from './method-name';
         <dt>Method</dt>
         <dd>{{ method() }}</dd>
       </div>
+      @if (tolerance(); as tolerance) {
+        <div>
+          <dt>Tolerance asked</dt>
+          <dd><app-number [value]="tolerance" /></dd>
+        </div>
+      }
       <div>
         <dt>Charged</dt>
         <dd><app-pairs [count]="run().answer.cost.pairs" /></dd>
@@ -35,18 +41,6 @@ import {methodName} from './method-name';
           >
         </dd>
       </div>
-      @if (run().answer.cost.preparation; as preparation) {
-        <div title="Packed columns and trees kept from earlier calls with the same charges">
-          <dt>Reused</dt>
-          <dd>
-            <span class="num">{{ preparation.hits }}</span> of
-            <span class="num">{{ preparation.hits + preparation.misses }}</span>&ngsp;<span
-              class="variant"
-              >prepared forms</span
-            >
-          </dd>
-        </div>
-      }
       @for (fact of facts(); track fact.label) {
         <div>
           <dt>{{ fact.label }}</dt>
@@ -56,8 +50,19 @@ import {methodName} from './method-name';
               <span class="unit">{{ fact.unit }}</span>
             }
             @if (fact.largest; as largest) {
-              &ngsp;<span class="variant small more">largest <app-number [value]="largest" /></span>
+              &ngsp;<span class="variant small more under"
+                >largest <app-number [value]="largest"
+              /></span>
             }
+          </dd>
+        </div>
+      }
+      @if (run().answer.cost.preparation; as preparation) {
+        <div title="Packed columns and trees kept from earlier calls with the same charges">
+          <dt>Prepared forms</dt>
+          <dd>
+            <span class="num">{{ preparation.hits }}</span> of
+            <span class="num">{{ preparation.hits + preparation.misses }}</span> reused
           </dd>
         </div>
       }
@@ -113,6 +118,11 @@ import {methodName} from './method-name';
       }
     }
 
+    .under {
+      display: block;
+      margin-inline-start: 0;
+    }
+
     p {
       margin-block-start: 10px;
     }
@@ -135,6 +145,7 @@ export class AnswerFacts {
     return `sha-256:${hex.slice(0, 4)}…${hex.slice(-4)}`;
   });
   protected readonly method = computed(() => methodName[this.run().answer.accuracy.method]);
+  protected readonly tolerance = computed(() => toleranceOf(this.run().answer));
   protected readonly facts = computed(() => accuracyFacts(this.run().answer));
   protected readonly note = computed(() => accuracyNote(this.run().answer));
 
