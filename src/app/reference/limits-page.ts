@@ -42,7 +42,7 @@ import {fixed} from '../format/numbers';
         </tr>
         <tr>
           <td>Any charged call</td>
-          <td>at least <span class="num">1000</span></td>
+          <td>at least <app-number [value]="least" /></td>
         </tr>
         <tr>
           <td>Refused and failed calls, time-outs of the service, replays, estimates</td>
@@ -94,6 +94,7 @@ import {fixed} from '../format/numbers';
   changeDetection: ChangeDetectionStrategy.OnPush,
 })
 export class LimitsPage {
+  protected readonly least = fixed(1000, 0);
   protected readonly perPoint = fixed(MULTIPOLE_PAIRS_PER_POINT, 0);
   protected readonly rows = [
     {what: 'Body of a request', limit: '8 MiB'},

@@ -41,6 +41,15 @@ import {methodName} from './method-name';
           >
         </dd>
       </div>
+      @if (run().answer.cost.preparation; as preparation) {
+        <div title="Packed columns and trees kept from earlier calls with the same charges">
+          <dt>Prepared forms</dt>
+          <dd>
+            <span class="num">{{ preparation.hits }}</span> of
+            <span class="num">{{ preparation.hits + preparation.misses }}</span> reused
+          </dd>
+        </div>
+      }
       @for (fact of facts(); track fact.label) {
         <div>
           <dt>{{ fact.label }}</dt>
@@ -54,15 +63,6 @@ import {methodName} from './method-name';
                 >largest <app-number [value]="largest"
               /></span>
             }
-          </dd>
-        </div>
-      }
-      @if (run().answer.cost.preparation; as preparation) {
-        <div title="Packed columns and trees kept from earlier calls with the same charges">
-          <dt>Prepared forms</dt>
-          <dd>
-            <span class="num">{{ preparation.hits }}</span> of
-            <span class="num">{{ preparation.hits + preparation.misses }}</span> reused
           </dd>
         </div>
       }
