@@ -1,9 +1,7 @@
 import type {FieldJob} from '../jobs.ts';
 import type {Arena} from './arena.ts';
-import type {EstimatedError, Part, Samples} from './multipole-job.ts';
-
-/** Sums over all parts [C/m, C/m²] at the targets of the request: V, Eₓ, E_y, E_z; NaN if masked. */
-export type Totals = readonly Float64Array[];
+import type {EstimatedError, Part, Samples, Totals} from './multipole-job.ts';
+import {countUnmasked, rootOfSquares} from './norms.ts';
 
 /** Adds up what the parts have at their sorted targets, turned into the common frame. */
 export function addUp(field: FieldJob, parts: readonly Part[], arena: Arena): Totals {
@@ -31,51 +29,37 @@ const IDENTITY = [1, 0, 0, 0, 1, 0, 0, 0, 1];
 
 /** What the answer differs by from direct sums at the samples, in the sense of the tolerance. */
 export function estimateError(totals: Totals, samples: Samples): EstimatedError {
-  const potential = relativeErrors(totals.slice(0, 1), samples.indices, samples.sums.slice(0, 1));
+  const potential = relativeErrors(totals.slice(0, 1), samples, 0);
   const shared = {
     potential: potential.relative,
     largestPotential: potential.largest,
-    samples: potential.count,
+    samples: countUnmasked(samples.sums),
   };
   if (totals.length === 1) return shared;
-  const field = relativeErrors(totals.slice(1), samples.indices, samples.sums.slice(1));
+  const field = relativeErrors(totals.slice(1), samples, 1);
   return {...shared, field: field.relative, largestField: field.largest};
-}
-
-/** Mean squares of a vector over all targets that are not masked. */
-export function meanSquare(columns: Totals): number {
-  let sum = 0;
-  let count = 0;
-  const [first] = columns;
-  for (let i = 0; i < first.length; i++) {
-    let square = 0;
-    for (const column of columns) square += column[i] * column[i];
-    if (!(square >= 0)) continue;
-    sum += square;
-    count++;
-  }
-  return count === 0 ? 0 : sum / count;
 }
 
 function relativeErrors(
   columns: Totals,
-  indices: Int32Array,
-  sums: readonly Float64Array[],
-): {relative: number; largest: number; count: number} {
-  let total = 0;
+  {indices, weights, sums}: Samples,
+  firstSum: number,
+): {relative: number; largest: number} {
+  const errors = columns.map((column, axis) =>
+    Float64Array.from(indices, (target, n) => column[target] - sums[firstSum + axis][n]),
+  );
+  const error = rootOfSquares(errors, weights);
   let largest = 0;
-  let count = 0;
-  indices.forEach((target, n) => {
-    let square = 0;
-    columns.forEach((column, axis) => (square += (column[target] - sums[axis][n]) ** 2));
-    if (!(square >= 0)) return;
-    total += square;
-    largest = Math.max(largest, square);
-    count++;
+  indices.forEach((_, n) => {
+    const size = rootOfSquares(errors.map(column => column.subarray(n, n + 1)));
+    largest = Math.max(largest, size);
   });
-  const all = meanSquare(columns);
-  const over = (square: number): number => (square === 0 ? 0 : Math.sqrt(square / all));
-  return {relative: over(count === 0 ? 0 : total / count), largest: over(largest), count};
+  const all = rootOfSquares(columns);
+  const mean = all / Math.sqrt(Math.max(1, countUnmasked(columns)));
+  return {
+    relative: error === 0 ? 0 : error / all,
+    largest: largest === 0 ? 0 : largest / mean,
+  };
 }
 
 /** Whether what was measured is well within what was asked. */

@@ -49,9 +49,14 @@ export interface Work {
 
 export const SAMPLING = -1;
 
+/** Sums over all parts [C/m, C/m²] at the targets of the request: V, Eₓ, E_y, E_z; NaN if masked. */
+export type Totals = readonly Float64Array[];
+
 /** Targets that are summed directly as well. */
 export interface Samples {
   readonly indices: Int32Array;
+  /** How many targets each stands for. */
+  readonly weights: Float64Array;
   /** V, Eₓ, E_y, E_z [C/m, C/m²], NaN where the target is masked. */
   readonly sums: readonly Float64Array[];
 }
@@ -65,7 +70,7 @@ export interface EstimatedError {
   readonly samples: number;
 }
 
-export type Phase = 'begin' | 'near' | 'far' | 'values' | 'done';
+export type Phase = 'begin' | 'near' | 'far' | 'values' | 'check' | 'done';
 
 /**
  * A field job computed by the multipole method, phase by phase: the pieces of a phase in any order on
@@ -96,6 +101,9 @@ export interface MultipoleJob {
   /** Coincident pairs: target, charge, target, charge …; the first of them, and how many. */
   readonly coincident: readonly number[];
   readonly coincidentCount: number;
+  readonly maskedCount: number;
+  /** What is to be checked. */
+  readonly totals?: Totals;
   readonly estimated?: EstimatedError;
 }
 
@@ -118,10 +126,11 @@ export function beginningOf(
     work: [],
     blocks: [0],
     parts: [],
-    samples: {indices: new Int32Array(0), sums: []},
+    samples: {indices: new Int32Array(0), weights: new Float64Array(0), sums: []},
     reach: 0,
     coincident: [],
     coincidentCount: 0,
+    maskedCount: 0,
   };
 }
 

@@ -1,13 +1,14 @@
 import {ServiceError} from '../../errors.ts';
-import type {FieldJob} from '../jobs.ts';
-import {COINCIDENCES_LISTED} from '../limits.ts';
+import type {FieldJob, Stop} from '../jobs.ts';
 import {ownMemory} from '../memory.ts';
 import {DirectSum, RESULT} from '../methods/direct-sum.ts';
 import {chargeColumns, type ChargeColumns} from '../sources/charge-columns.ts';
 import {targetPositions} from '../targets.ts';
 import {ownWorkplace} from '../workplace.ts';
+import {note, type Coincidences} from './coincidences.ts';
 import type {TargetTree} from './interactions.ts';
 import type {MultipoleJob, Part, PartCharges, Work} from './multipole-job.ts';
+import {checkStop} from './tools.ts';
 import {CHARGE_STRIDE} from './source-tree.ts';
 
 /** Evaluations of a piece of work: some 20 ms of them. */
@@ -15,25 +16,37 @@ const PAIRS_OF_WORK = 8e6;
 
 /** Leaves of all parts, in pieces of about the same work. */
 export function nearWork({mostPairs}: MultipoleJob, parts: readonly Part[]): Work[] {
+  const total = nearPairs(parts);
+  if (total > mostPairs) throw tooNear(total, mostPairs);
   const work: Work[] = [];
-  let total = 0;
   parts.forEach(({targets}, part) => {
-    const {leaves, ranges} = targets;
+    const {length} = targets.leaves;
     let first = 0;
     let pairs = 0;
-    for (let n = 0; n < leaves.length; n++) {
-      const box = leaves[n];
-      const own = (ranges[2 * box + 1] - ranges[2 * box]) * chargesNear(targets, box);
-      total += own;
-      pairs += own;
-      if (pairs < PAIRS_OF_WORK && n + 1 < leaves.length) continue;
+    for (let n = 0; n < length; n++) {
+      pairs += pairsOfLeaf(targets, n);
+      if (pairs < PAIRS_OF_WORK && n + 1 < length) continue;
       work.push({part, first, last: n + 1});
       first = n + 1;
       pairs = 0;
     }
   });
-  if (total > mostPairs) throw tooNear(total, mostPairs);
   return work;
+}
+
+/** Pairs of a target and a charge that are summed directly. */
+export function nearPairs(parts: readonly Part[]): number {
+  let total = 0;
+  for (const {targets} of parts) {
+    for (let n = 0; n < targets.leaves.length; n++) total += pairsOfLeaf(targets, n);
+  }
+  return total;
+}
+
+function pairsOfLeaf(targets: TargetTree, leaf: number): number {
+  const box = targets.leaves[leaf];
+  const {ranges} = targets;
+  return (ranges[2 * box + 1] - ranges[2 * box]) * chargesNear(targets, box);
 }
 
 function tooNear(pairs: number, most: number): ServiceError {
@@ -63,27 +76,12 @@ function forRuns(
   }
 }
 
-/** What `sumFlagged` found. */
-export interface Coincidences {
-  /** Target and charge; the first MOST_NOTED, in the order of the trees. */
-  readonly pairs: (readonly [target: number, charge: number])[];
-  coincidentCount: number;
-}
-
-const MOST_NOTED = 100_000;
-
-/** Those that an answer may list, in the order of the request. */
-export function listed({pairs}: Coincidences): number[] {
-  const sorted = [...pairs].sort((a, b) => a[0] - b[0] || a[1] - b[1]);
-  return sorted.slice(0, COINCIDENCES_LISTED).flat();
-}
-
 /**
  * Sums the near part again at targets that may lie on a charge: as the direct sum does, with what
  * was rounded taken into account. Masked targets get NaN.
  */
-export function sumFlagged(field: FieldJob, part: Part, found: Coincidences): void {
-  const {targets, values, sources} = part;
+export function sumFlagged(field: FieldJob, part: Part, found: Coincidences, stop: Stop): void {
+  const {targets, values} = part;
   const {leaves, ranges, order} = targets;
   for (const box of leaves) {
     const from = ranges[2 * box];
@@ -102,15 +100,22 @@ export function sumFlagged(field: FieldJob, part: Part, found: Coincidences): vo
       chargeRoundings: 0,
     } as const;
     const sum = new DirectSum(charges, options, 1, ownWorkplace);
+    const alikes = new Map<number, Int32Array>();
     for (let i = from; i < to; i++) {
       if (values.flags[i] === 0) continue;
+      checkStop(stop);
       const target = order[i];
       targetPositions(field.targets, target, 1, sum.positions);
       sum.compute(0, 1, [0, charges.count]);
-      for (const head of sum.coincident.get(0) ?? []) {
-        note(found, target, part.charges, sources, heads[head], field);
-      }
+      const coincident = (sum.coincident.get(0) ?? []).map(n => {
+        const head = heads[n];
+        const known = alikes.get(head) ?? chargesOf(field, part, head);
+        alikes.set(head, known);
+        return known;
+      });
+      if (coincident.length > 0) note(found, target, inOrder(coincident));
       const isMasked = sum.withoutSum.length > 0;
+      if (isMasked) found.masked.add(target);
       const [v, ex, ey, ez] = [RESULT.v, RESULT.e, RESULT.e + 1, RESULT.e + 2].map(place =>
         isMasked ? NaN : sum.result(place)[0],
       );
@@ -164,18 +169,17 @@ export function chargeAt({ranges}: PartCharges, index: number): number {
   throw new RangeError(`expected a charge of the part; got ${index}`);
 }
 
-function note(
-  found: Coincidences,
-  target: number,
-  own: PartCharges,
-  {order, members}: Part['sources'],
-  head: number,
-  {charges}: FieldJob,
-): void {
-  const all = Array.from({length: members[head]}, (_, n) => chargeAt(own, order[head + n]));
-  for (const index of all.sort((a, b) => a - b)) {
-    if (charges.q[index] === 0) continue;
-    found.coincidentCount++;
-    if (found.pairs.length < MOST_NOTED) found.pairs.push([target, index]);
-  }
+/** The charges, but those of zero, that one of a tree stands for. */
+function chargesOf({charges: {q}}: FieldJob, {charges, sources}: Part, head: number): Int32Array {
+  const {order, members} = sources;
+  const all = Int32Array.from({length: members[head]}, (_, n) =>
+    chargeAt(charges, order[head + n]),
+  );
+  return all.filter(index => q[index] !== 0).sort();
+}
+
+/** One ascending list of several. */
+function inOrder(lists: readonly Int32Array[]): ArrayLike<number> {
+  if (lists.length === 1) return lists[0];
+  return Int32Array.from(lists.flatMap(list => [...list])).sort();
 }

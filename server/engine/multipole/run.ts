@@ -7,11 +7,13 @@ import type {LoadedTable} from './load-table.ts';
 import {begin} from './begin.ts';
 import {effortFor, efforts, nextEffort} from './effort.ts';
 import {farWork, handDown, makeExpansions, valuesWork} from './expansions.ts';
-import {addUp, estimateError, isReached, type Totals} from './finish.ts';
+import {addUp, estimateError, isReached} from './finish.ts';
 import {kernelsOf} from './kernels.ts';
-import {atPhase, SAMPLING, type MultipoleJob} from './multipole-job.ts';
-import {listed, sumFlagged, type Coincidences} from './near.ts';
-import {sumSamples} from './samples.ts';
+import {atPhase, SAMPLING, type MultipoleJob, type Totals} from './multipole-job.ts';
+import {listed, nothingFound} from './coincidences.ts';
+import {nearPairs, sumFlagged} from './near.ts';
+import {countUnmasked} from './norms.ts';
+import {chooseChecks, samplingWork, sumSamples} from './samples.ts';
 import {farShare} from './share.ts';
 import {tableOf, type Tools} from './tools.ts';
 
@@ -50,24 +52,45 @@ export function computeMultipoleBlock(
 export function advance(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   switch (job.phase) {
     case 'begin':
-      return begin(job, tools);
+      return beginWith(job, {}, tools);
     case 'near':
       return afterNear(job, tools);
     case 'far': {
       for (const part of job.parts) handDown(part, usedTable(job), tools);
       return atPhase(job, 'values', valuesWork(job.parts));
     }
-    case 'values':
-      return afterValues(job, tools);
+    case 'values': {
+      const totals = addUp(job.field, job.parts, tools.arena);
+      const samples = chooseChecks(job.field, totals, tools.arena);
+      return atPhase(job, 'check', samplingWork(job.field, samples), {samples, totals});
+    }
+    case 'check':
+      return afterCheck(job, tools);
     case 'done':
       return job;
   }
 }
 
-function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob {
+/** Of all pairs, how many may be near so that the rest is worth the trouble. */
+const MOST_NEAR = 0.75;
+
+function beginWith(
+  job: MultipoleJob,
+  changes: Partial<MultipoleJob>,
+  tools: Tools,
+): MultipoleJob | FieldJob {
+  const {field, mostPairs} = job;
+  const begun = begin({...job, ...changes}, tools);
+  const all = field.charges.count * field.count;
+  // As with a coincidence distance as large as the whole.
+  const isDirect = all <= mostPairs && nearPairs(begun.parts) > MOST_NEAR * all;
+  return isDirect ? field : begun;
+}
+
+function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   const {field, parts, tolerance, effort, leastEffort} = job;
-  const found: Coincidences = {pairs: [], coincidentCount: 0};
-  for (const part of parts) sumFlagged(field, part, found);
+  const found = nothingFound();
+  for (const part of parts) sumFlagged(field, part, found, tools.stop);
   const near = addUp(field, parts, tools.arena);
   const share = farShare(near, job.samples);
   const wanted = Math.max(leastEffort, effortFor(tolerance, field.sum !== 'potential', share));
@@ -75,7 +98,7 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob {
   const better = efforts[wanted].level;
   // Other boxes are near with another separation, so all begins again.
   if (better.separation !== level.separation && wanted > effort) {
-    return begin({...job, effort: wanted}, tools);
+    return beginWith(job, {effort: wanted}, tools);
   }
   const used = better.separation === level.separation ? wanted : effort;
   const table = tableOf(tools, efforts[used].level.name);
@@ -85,20 +108,23 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob {
     table,
     coincident: listed(found),
     coincidentCount: found.coincidentCount,
+    maskedCount: found.masked.size,
   });
 }
 
-function afterValues(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
-  const {field, parts, samples, effort, tolerance} = job;
-  const totals = addUp(field, parts, tools.arena);
+function afterCheck(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
+  const {field, samples, totals, effort, tolerance, maskedCount} = job;
+  if (!totals) throw new RangeError('expected totals');
   const estimated = estimateError(totals, samples);
-  if (isReached(estimated, tolerance)) {
+  // A value that single precision cannot hold is no value, and no mask either.
+  const isWhole = countUnmasked(totals) === field.count - maskedCount;
+  if (isWhole && isReached(estimated, tolerance)) {
     writeTotals(field, totals);
     return atPhase(job, 'done', [], {estimated});
   }
-  const next = nextEffort(effort, tolerance, estimated);
+  const next = isWhole ? nextEffort(effort, tolerance, estimated) : finest(effort);
   if (next !== undefined) {
-    return begin({...job, effort: next, leastEffort: next}, tools);
+    return beginWith(job, {effort: next, leastEffort: next}, tools);
   }
   if (field.charges.count * field.count <= job.mostPairs) return field;
   const detail = `The best the multipole method reached is a relative error of about ${Math.max(estimated.potential, estimated.field ?? 0).toExponential(1)}; the tolerance is ${tolerance}.`;
@@ -106,6 +132,10 @@ function afterValues(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
     errors: [{pointer: '/accuracy/tolerance', code: 'tolerance-not-reached', detail}],
   });
 }
+
+/** The last effort, unless that was it. */
+const finest = (effort: number): number | undefined =>
+  effort + 1 < efforts.length ? efforts.length - 1 : undefined;
 
 function writeTotals(field: FieldJob, totals: Totals): void {
   const scales = scalesOf(field);

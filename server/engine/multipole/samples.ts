@@ -4,17 +4,77 @@ import {seededSamples} from '../samples.ts';
 import {positionsOfSamples} from '../targets.ts';
 import type {Workplace} from '../workplace.ts';
 import type {Arena} from './arena.ts';
-import {SAMPLING, type Samples, type Work} from './multipole-job.ts';
+import {SAMPLING, type Samples, type Totals, type Work} from './multipole-job.ts';
+import {rootOfSquares} from './norms.ts';
 
-/** Targets that are summed directly as well, to see what was reached. */
-const SAMPLES = 256;
+/** Targets that are summed directly as well: to choose a level, and to see what was reached. */
+const FIRST_SAMPLES = 64;
+const CHECKED_SAMPLES = 256;
 /** Evaluations of a piece of work: some 20 ms of them. */
 const PAIRS_OF_WORK = 8e6;
 
+/** Some targets, while nothing is known of any. */
 export function chooseSamples(field: FieldJob, arena: Arena): Samples {
-  const indices = arena.keep(seededSamples(field.count, SAMPLES));
-  const columns = field.sum === 'potential' ? 1 : 4;
-  return {indices, sums: Array.from({length: columns}, () => arena.doubles(indices.length))};
+  const indices = arena.keep(seededSamples(field.count, FIRST_SAMPLES));
+  const weights = arena.doubles(indices.length).fill(field.count / indices.length);
+  return {indices, weights, sums: roomForSums(field, indices.length, arena)};
+}
+
+/**
+ * Those to tell the error by. Of few targets all; of many, each with a chance that is a third the
+ * same for all, a third by its share in ‖V‖² and a third by that in ‖E‖²: where a few targets make
+ * most of a norm, as those of a large grid that lie in a small cloud of charges do, they are among
+ * the samples (M. H. Hansen and W. N. Hurwitz, Ann. Math. Stat. 14 (1943)).
+ */
+export function chooseChecks(field: FieldJob, totals: Totals, arena: Arena): Samples {
+  const {count} = field;
+  if (count <= CHECKED_SAMPLES) {
+    const indices = arena.keep(seededSamples(count, count));
+    const weights = arena.doubles(count).fill(1);
+    return {indices, weights, sums: roomForSums(field, count, arena)};
+  }
+  const chances = new Float64Array(count);
+  for (const columns of [totals.slice(0, 1), totals.slice(1)]) addShares(chances, columns);
+  let all = 0;
+  for (let i = 0; i < count; i++) {
+    chances[i] += 1 / count;
+    all += chances[i];
+  }
+  const places = seededSamples(PARTS, CHECKED_SAMPLES);
+  const chosen: number[] = [];
+  const weights: number[] = [];
+  let passed = 0;
+  for (let i = 0, n = 0; i < count; i++) {
+    passed += chances[i];
+    const before = n;
+    while (n < places.length && (places[n] / PARTS) * all < passed) n++;
+    if (n === before) continue;
+    chosen.push(i);
+    // How often it was met, over how often that is to be expected.
+    weights.push(((n - before) / places.length) * (all / chances[i]));
+  }
+  const indices = arena.keep(chosen);
+  const stored = arena.doubles(chosen.length);
+  stored.set(weights);
+  return {indices, weights: stored, sums: roomForSums(field, chosen.length, arena)};
+}
+
+/** The sum of all chances, in as many parts as tell places apart. */
+const PARTS = 2 ** 30;
+
+/** Adds what part of ‖columns‖² every target has; masked ones have none. */
+function addShares(chances: Float64Array, columns: Totals): void {
+  const root = rootOfSquares(columns);
+  if (!(root > 0 && root < Infinity)) return;
+  for (let i = 0; i < chances.length; i++) {
+    let share = 0;
+    for (const column of columns) share += (column[i] / root) ** 2;
+    if (share >= 0) chances[i] += share;
+  }
+}
+
+function roomForSums({sum}: FieldJob, count: number, arena: Arena): Float64Array[] {
+  return Array.from({length: sum === 'potential' ? 1 : 4}, () => arena.doubles(count));
 }
 
 export function samplingWork({charges}: FieldJob, {indices}: Samples): Work[] {

@@ -1,6 +1,6 @@
-import {meanSquare, type Totals} from './finish.ts';
 import type {FarShare} from './effort.ts';
-import type {Samples} from './multipole-job.ts';
+import type {Samples, Totals} from './multipole-job.ts';
+import {countUnmasked, rootOfSquares} from './norms.ts';
 
 /**
  * How much of V and of E comes from far boxes, from the near part at all targets and the whole at
@@ -14,10 +14,14 @@ export function farShare(near: Totals, samples: Samples): FarShare {
     const far: Float64Array[] = columns.map((column, axis) =>
       Float64Array.from(samples.indices, (target, n) => sums[axis][n] - column[target]),
     );
-    const farSize = Math.sqrt(meanSquare(far));
-    const whole = Math.sqrt(meanSquare(sums));
-    const all = Math.max(whole, Math.sqrt(meanSquare(columns)) - farSize);
+    const farSize = rootMeanSquare(far);
+    const whole = rootMeanSquare(sums);
+    const all = Math.max(whole, rootMeanSquare(columns) - farSize);
     return all === 0 ? 0 : farSize / all;
   };
   return {potential: share(0, 1), field: near.length > 1 ? share(1, 4) : 0};
+}
+
+function rootMeanSquare(columns: Totals): number {
+  return rootOfSquares(columns) / Math.sqrt(Math.max(1, countUnmasked(columns)));
 }
