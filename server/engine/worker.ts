@@ -101,8 +101,15 @@ async function resultOf(task: Task): Promise<TaskResults[Task['type']]> {
         const own = multipoleStation();
         if (!own) throw new RangeError('expected kernels');
         const arena = new Arena(heap, task.tag);
-        const job = advance(task.job, {...own, arena, forms, stop: stopOf(task.flag)});
-        return {job, forms: forms.report};
+        const spareTag = newFormTag();
+        const spare = new Arena(heap, spareTag);
+        const stop = stopOf(task.flag);
+        try {
+          const job = advance(task.job, {...own, arena, spare, forms, stop});
+          return {job, forms: forms.report};
+        } finally {
+          heap.release(spareTag);
+        }
       });
     case 'block':
       if (task.job.kind === 'multipole') multipoleStation();

@@ -131,8 +131,10 @@ export function createWorkshop(bytes = 2 ** 31) {
           }
         });
         if (current.kind !== 'multipole' || current.phase === 'done') break;
-        const tools = {...multipole, arena: new Arena(heap, tag), forms, stop: NEVER};
+        const spare = new Arena(heap, scratch);
+        const tools = {...multipole, arena: new Arena(heap, tag), spare, forms, stop: NEVER};
         job = timed(`after ${name}`, () => advance(current, tools));
+        heap.release(scratch);
       }
       const columns = field.columns.map((_, n) =>
         field.out.slice(n * field.count, (n + 1) * field.count),

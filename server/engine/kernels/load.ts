@@ -13,7 +13,7 @@ export type KernelModule = WebAssembly.Module;
 export type KernelExports = DirectExports & MultipoleExports & {readonly version: () => number};
 
 /** Raised, with `version` in assembly/direct.ts, whenever the kernels are called in another way. */
-const VERSION = 4;
+const VERSION = 5;
 const PAGE = 65_536;
 /** Below this a heap is of no use [bytes]. */
 const SMALLEST = 2 ** 24;

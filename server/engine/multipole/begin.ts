@@ -18,6 +18,7 @@ import {
   type SourceTree,
 } from './source-tree.ts';
 import type {Cube} from './boxes.ts';
+import {largestCell, latticeCube, latticeOf} from './lattice.ts';
 import type {LoadedTable} from './load-table.ts';
 import {writeSources, writeTargets} from './structs.ts';
 import {checkStop, tableOf, type Tools} from './tools.ts';
@@ -28,7 +29,7 @@ const BATCH = 256;
 export function begin(job: MultipoleJob, tools: Tools): MultipoleJob {
   const {field} = job;
   const {arena} = tools;
-  const {targets, radius} = positionsOf(job, arena);
+  const {targets, radius} = positionsOf(job, tools.spare);
   const rounding = field.charges.largestRadius + radius;
   const reach = Math.max(field.coincidenceDistance, rounding, MIN_DISTANCE);
   const table = tableOf(tools, efforts[job.effort].level.name);
@@ -48,9 +49,9 @@ export function begin(job: MultipoleJob, tools: Tools): MultipoleJob {
 }
 
 /** All targets as placed, and their largest radius. */
-function positionsOf({field}: MultipoleJob, arena: Arena): {targets: Positions; radius: number} {
+function positionsOf({field}: MultipoleJob, spare: Arena): {targets: Positions; radius: number} {
   const {count} = field;
-  const [x, y, z] = [0, 1, 2].map(() => arena.doubles(count));
+  const [x, y, z] = [0, 1, 2].map(() => spare.doubles(count));
   const batch = positionColumns(new Float64Array(POSITION_COLUMNS * BATCH), BATCH);
   let radius = 0;
   for (let start = 0; start < count; start += BATCH) {
@@ -70,21 +71,26 @@ function partOf(
   placed: Positions,
   placedReach: number,
   table: LoadedTable,
-  {arena, forms, stop}: Tools,
+  {arena, spare, forms, stop}: Tools,
 ): Part {
   const {pairs, capacity} = efforts[effort];
-  const targets = inFrame(charges, placed, arena);
+  const targets = inFrame(charges, placed, spare);
   const bounds = boundsOf(targets);
   // Turning targets into the frame rounds them, and what is coincident must still be near.
   const largest = Math.max(...bounds.high.map(Math.abs), ...bounds.low.map(Math.abs));
   const reach = placedReach + (charges.placement ? 64 * UNIT_ROUNDOFF * largest : 0);
-  const root = rootCube(charges, bounds);
+  const lattice = charges.placement ? undefined : latticeOf(field.targets);
+  const root = lattice ? latticeCube(lattice, boundsOf(charges)) : rootCube(charges, bounds);
   const {digest} = charges;
-  const make = (own: Arena): SourceTree => sourceTree(own, charges, root, capacity);
+  const make = (own: Arena): SourceTree => sourceTree(own, spare, charges, root, capacity);
   const key = digest && treeKey(digest, root, capacity);
   const sources = key === undefined ? make(arena) : forms.get(key, make);
   checkStop(stop);
-  const tree = targetTree(arena, targets, sources, table, {pairs, smallestBox: reach});
+  const tree = targetTree(arena, spare, targets, sources, table, {
+    pairs,
+    smallestBox: reach,
+    ...(lattice && {largestBox: largestCell(lattice)}),
+  });
   checkStop(stop);
   const column = (): Float64Array => arena.doubles(targets.count + COLUMN_PADDING);
   const values = {
@@ -96,6 +102,7 @@ function partOf(
     charges,
     sources,
     treeKey: key,
+    ...(lattice && {lattice}),
     targets: tree,
     values,
     reach,
@@ -105,12 +112,12 @@ function partOf(
 }
 
 /** p = Rᵀ (p′ − t) */
-function inFrame({placement}: PartCharges, placed: Positions, arena: Arena): Positions {
+function inFrame({placement}: PartCharges, placed: Positions, spare: Arena): Positions {
   if (!placement) return placed;
   const {count} = placed;
   const [a, b, c, d, e, f, g, h, i] = placement.rotation;
   const [tx, ty, tz] = placement.shift;
-  const [x, y, z] = [0, 1, 2].map(() => arena.doubles(count));
+  const [x, y, z] = [0, 1, 2].map(() => spare.doubles(count));
   for (let n = 0; n < count; n++) {
     const px = placed.x[n] - tx;
     const py = placed.y[n] - ty;

@@ -1,3 +1,4 @@
+import type {Arena} from './arena.ts';
 import {GrowingDoubles, GrowingIntegers} from './growing.ts';
 
 /** A cube: centre and size [m]. */
@@ -34,9 +35,10 @@ export function sortedPoints(
   columns: readonly Float64Array[],
   order: Int32Array,
   root: Cube,
+  spare: Arena,
 ): SortedPoints {
   const count = order.length;
-  roughOrder(from, order, root);
+  roughOrder(from, order, root, spare);
   from.forEach((values, n) => {
     const column = columns[n];
     for (let i = 0; i < count; i++) column[i] = values[order[i]];
@@ -44,9 +46,9 @@ export function sortedPoints(
   return {
     columns,
     order,
-    spare: new Float64Array(count),
-    spareOrder: new Int32Array(count),
-    octantOf: new Uint8Array(count),
+    spare: spare.doubles(count),
+    spareOrder: spare.integers(count),
+    octantOf: spare.flags(count),
   };
 }
 
@@ -59,13 +61,14 @@ function roughOrder(
   [xs, ys, zs]: readonly Float64Array[],
   order: Int32Array,
   {x, y, z, size}: Cube,
+  spare: Arena,
 ): void {
   const count = order.length;
   const levels = Math.min(MOST_LEVELS, Math.ceil(Math.log2(Math.max(1, count / ENOUGH)) / 3));
   const side = 2 ** levels;
   const scale = side / size;
   const bits = Int32Array.from({length: side}, (_, n) => spreadBits(n));
-  const keys = new Int32Array(count);
+  const keys = spare.integers(count);
   const next = new Int32Array(side ** 3 + 1);
   const place = (value: number, centre: number): number => {
     const at = Math.floor((value - centre) * scale + side / 2);

@@ -1,4 +1,5 @@
 import {kernelsOf} from './kernels.ts';
+import {LEAF_STRIDE, sortLeaves} from './lattice.ts';
 import {numberSize, type LoadedTable} from './load-table.ts';
 import type {Part, Work} from './multipole-job.ts';
 import type {Arena} from './arena.ts';
@@ -6,25 +7,35 @@ import {BOX_PADDING, type SourceTree} from './source-tree.ts';
 import {setExpansions, setLocals, type SourceExpansions} from './structs.ts';
 import type {Tools} from './tools.ts';
 
-/** Multipoles of all boxes of a part, kept where its tree is, and room for its local expansions. */
-export function makeExpansions(part: Part, table: LoadedTable, tools: Tools): void {
+/** What far boxes take of a part, kept where its tree is, and room for its local expansions. */
+export function makeExpansions(part: Part, table: LoadedTable, tools: Tools): Part {
   const {arena, forms} = tools;
   const {sources, sourcesAddress, targets, treeKey} = part;
-  const make = (own: Arena): SourceExpansions =>
-    multipolesOf(sources, sourcesAddress, table, own, tools);
+  const bytes = numberSize(table.level) * table.size;
+  const forLocals = bytes * (targets.boxCount + BOX_PADDING);
+  const forMultipoles = bytes * (sources.boxCount + BOX_PADDING);
+  // Multipoles are needed only until all that is taken of them is made: then this is free again.
+  const room = arena.take(Math.max(forLocals, forMultipoles));
+  const make = (own: Arena): SourceExpansions => {
+    const expansions = expansionsOf(sources, sourcesAddress, room, table, own, tools);
+    new Uint8Array(arena.buffer, room, Math.max(forLocals, forMultipoles)).fill(0);
+    return expansions;
+  };
   const expansions =
     treeKey === undefined
       ? make(arena)
-      : forms.get(`${treeKey}:multipoles:${table.level.name}`, make);
-  setExpansions(arena, sourcesAddress, expansions);
-  const bytes = numberSize(table.level) * table.size;
-  setLocals(arena, part.targetsAddress, arena.take(bytes * (targets.boxCount + BOX_PADDING)));
+      : forms.get(`${treeKey}:expansions:${table.level.name}`, make);
+  setExpansions(arena, sourcesAddress, room, expansions);
+  setLocals(arena, part.targetsAddress, room);
+  const {lattice} = part;
+  return lattice ? {...part, sorted: sortLeaves(lattice, targets, table, arena)} : part;
 }
 
-/** From the leaves up. */
-function multipolesOf(
+/** Multipoles from the leaves up, and what far boxes take of them. */
+function expansionsOf(
   {boxCount, leaves, levels}: SourceTree,
   sourcesAddress: number,
+  multipoles: number,
   table: LoadedTable,
   arena: Arena,
   {exports, scratch}: Tools,
@@ -33,11 +44,10 @@ function multipolesOf(
   const room = (boxes: number, size: number): number =>
     arena.take(numberSize(table.level) * size * (boxes + BOX_PADDING));
   const expansions = {
-    multipoles: room(boxCount, table.size),
     compressed: room(boxCount, table.sourceSize),
     zeros: room(0, Math.max(table.size, table.sourceSize)),
   };
-  setExpansions(arena, sourcesAddress, expansions);
+  setExpansions(arena, sourcesAddress, multipoles, expansions);
   kernels.multipoles(sourcesAddress, table.address, leaves.byteOffset, 0, leaves.length, scratch);
   for (let level = levels.length - 2; level >= 0; level--) {
     kernels.up(sourcesAddress, table.address, levels[level], levels[level + 1], scratch);
@@ -67,21 +77,31 @@ export function farWork(parts: readonly Part[]): Work[] {
 const TARGETS_OF_WORK = 40_000;
 
 export function valuesWork(parts: readonly Part[]): Work[] {
-  const work: Work[] = [];
-  parts.forEach(({targets: {leaves, ranges}}, part) => {
+  return parts.flatMap(({targets, sorted}, part) => {
+    const {ranges} = targets;
+    const others = sorted?.others ?? targets.leaves;
+    const work: Work[] = [];
     let first = 0;
     let held = 0;
-    for (let n = 0; n < leaves.length; n++) {
-      const box = leaves[n];
+    others.forEach((box, n) => {
       held += ranges[2 * box + 1] - ranges[2 * box];
-      if (held < TARGETS_OF_WORK && n + 1 < leaves.length) continue;
+      if (held < TARGETS_OF_WORK && n + 1 < others.length) return;
       work.push({part, first, last: n + 1});
       first = n + 1;
       held = 0;
-    }
+    });
+    sorted?.whole.forEach(({leaves}, whole) => {
+      const count = leaves.length / LEAF_STRIDE;
+      for (let start = 0; start < count; start += WHOLE_OF_WORK) {
+        work.push({part, first: start, last: Math.min(start + WHOLE_OF_WORK, count), whole});
+      }
+    });
+    return work;
   });
-  return work;
 }
+
+/** Whole boxes of a lattice of a piece of work. */
+const WHOLE_OF_WORK = 256;
 
 /** Hands local expansions down from the root to the leaves. */
 export function handDown(part: Part, table: LoadedTable, {exports, scratch}: Tools): void {

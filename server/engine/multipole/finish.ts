@@ -5,8 +5,7 @@ import {countUnmasked, rootOfSquares} from './norms.ts';
 
 /** Adds up what the parts have at their sorted targets, turned into the common frame. */
 export function addUp(field: FieldJob, parts: readonly Part[], arena: Arena): Totals {
-  const columns = field.sum === 'potential' ? 1 : 4;
-  const totals = Array.from({length: columns}, () => arena.doubles(field.count));
+  const totals = roomForTotals(field, arena);
   for (const {charges, targets, values} of parts) {
     const {order} = targets;
     const {v, e} = values;
@@ -24,6 +23,19 @@ export function addUp(field: FieldJob, parts: readonly Part[], arena: Arena): To
   }
   return totals;
 }
+
+/** In the columns of the answer where it has them, which are scaled later. */
+function roomForTotals({sum, columns, count, out}: FieldJob, arena: Arena): Totals {
+  const names = sum === 'potential' ? TOTALS.slice(0, 1) : TOTALS;
+  return names.map(name => {
+    const index = columns.indexOf(name);
+    return index < 0
+      ? arena.doubles(count)
+      : out.subarray(index * count, (index + 1) * count).fill(0);
+  });
+}
+
+const TOTALS = ['potential', 'fieldX', 'fieldY', 'fieldZ'] as const;
 
 const IDENTITY = [1, 0, 0, 0, 1, 0, 0, 0, 1];
 

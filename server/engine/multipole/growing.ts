@@ -1,56 +1,50 @@
-/** Whole numbers, as many as come. */
-export class GrowingIntegers {
-  #values = new Int32Array(1024);
+const CHUNK_BITS = 16;
+const CHUNK = 1 << CHUNK_BITS;
+const IN_CHUNK = CHUNK - 1;
+
+/** Numbers, as many as come: in chunks, so that growing copies nothing. */
+abstract class Growing<T extends Int32Array | Float64Array> {
+  readonly #chunks: T[] = [];
   #length = 0;
+
+  protected abstract makeChunk(length: number): T;
 
   get length(): number {
     return this.#length;
   }
 
   push(value: number): void {
-    if (this.#length === this.#values.length) this.#grow();
-    this.#values[this.#length++] = value;
+    if ((this.#length & IN_CHUNK) === 0) this.#chunks.push(this.makeChunk(CHUNK));
+    this.#chunks[this.#length >> CHUNK_BITS][this.#length & IN_CHUNK] = value;
+    this.#length++;
   }
 
   at(index: number): number {
-    return this.#values[index];
+    return this.#chunks[index >> CHUNK_BITS][index & IN_CHUNK];
   }
 
   set(index: number, value: number): void {
-    this.#values[index] = value;
+    this.#chunks[index >> CHUNK_BITS][index & IN_CHUNK] = value;
   }
 
-  /** A view of all of them; not to be kept. */
-  get values(): Int32Array {
-    return this.#values.subarray(0, this.#length);
-  }
-
-  #grow(): void {
-    const values = new Int32Array(2 * this.#values.length);
-    values.set(this.#values);
-    this.#values = values;
+  /** Copies all of them to the beginning of `out`. */
+  copyTo<O extends T>(out: O): O {
+    this.#chunks.forEach((chunk, n) => {
+      const from = n << CHUNK_BITS;
+      out.set(chunk.subarray(0, Math.min(CHUNK, this.#length - from)), from);
+    });
+    return out;
   }
 }
 
-/** Numbers, as many as come. */
-export class GrowingDoubles {
-  #values = new Float64Array(1024);
-  #length = 0;
-
-  push(value: number): void {
-    if (this.#length === this.#values.length) {
-      const values = new Float64Array(2 * this.#values.length);
-      values.set(this.#values);
-      this.#values = values;
-    }
-    this.#values[this.#length++] = value;
+export class GrowingIntegers extends Growing<Int32Array> {
+  protected makeChunk(length: number): Int32Array {
+    return new Int32Array(length);
   }
+}
 
-  at(index: number): number {
-    return this.#values[index];
-  }
-
-  get values(): Float64Array {
-    return this.#values.subarray(0, this.#length);
+export class GrowingDoubles extends Growing<Float64Array> {
+  protected makeChunk(length: number): Float64Array {
+    return new Float64Array(length);
   }
 }

@@ -40,12 +40,15 @@ export const MOST_BOXES = 2 ** (32 - SLOT_BITS);
 export interface Splitting {
   /** Pairs of a target and a charge in two near boxes up to which they are summed directly. */
   readonly pairs: number;
-  /** [m] Boxes are not smaller. */
+  /** [m] Boxes are not smaller, and those of targets not larger if they can be split. */
   readonly smallestBox: number;
+  readonly largestBox?: number;
 }
 
+/** @param spare memory that is needed only while the tree is made */
 export function targetTree(
   arena: Arena,
+  spare: Arena,
   targets: Positions,
   sources: SourceTree,
   {slots, level}: LoadedTable,
@@ -55,12 +58,18 @@ export function targetTree(
   const columns = [0, 1, 2].map(() => arena.doubles(count + COLUMN_PADDING));
   const [x, y, z] = columns;
   const order = arena.integers(count);
-  const points = sortedPoints([targets.x, targets.y, targets.z], columns, order, sources.root);
+  const points = sortedPoints(
+    [targets.x, targets.y, targets.z],
+    columns,
+    order,
+    sources.root,
+    spare,
+  );
   const boxes = new Boxes(sources.root, 0, count);
   const pairs = new NearPairs(boxes, points, sources, splitting, level.separation, slots);
   pairs.visit();
   const boxArray = arena.doubles(4 * (boxes.count + BOX_PADDING));
-  boxArray.set(boxes.geometry.values);
+  boxes.geometry.copyTo(boxArray);
   return {
     count,
     x,
@@ -69,16 +78,16 @@ export function targetTree(
     order,
     boxCount: boxes.count,
     boxes: boxArray,
-    ranges: arena.keep(boxes.ranges.values),
-    children: arena.keep(boxes.children.values),
-    octants: arena.keep(boxes.octants.values),
-    parents: arena.keep(boxes.parents.values),
+    ranges: boxes.ranges.copyTo(arena.integers(boxes.ranges.length)),
+    children: boxes.children.copyTo(arena.integers(boxes.children.length)),
+    octants: boxes.octants.copyTo(arena.integers(boxes.octants.length)),
+    parents: boxes.parents.copyTo(arena.integers(boxes.parents.length)),
     levels: pairs.levels,
-    leaves: arena.keep(pairs.leaves.values),
-    farStarts: arena.keep(pairs.farStarts.values),
-    farEntries: arena.keep(pairs.farEntries.values),
-    nearStarts: arena.keep(pairs.nearStarts.values),
-    nearEntries: arena.keep(pairs.nearEntries.values),
+    leaves: pairs.leaves.copyTo(arena.integers(pairs.leaves.length)),
+    farStarts: pairs.farStarts.copyTo(arena.integers(pairs.farStarts.length)),
+    farEntries: pairs.farEntries.copyTo(arena.integers(pairs.farEntries.length)),
+    nearStarts: pairs.nearStarts.copyTo(arena.integers(pairs.nearStarts.length)),
+    nearEntries: pairs.nearEntries.copyTo(arena.integers(pairs.nearEntries.length)),
   };
 }
 
@@ -129,7 +138,8 @@ class NearPairs {
     const to = this.#starts.at(box + 1);
     const targets = boxes.pointsIn(box);
     const canSplit = boxes.sizeOf(box) >= 2 * splitting.smallestBox && boxes.isDivisible(box);
-    let splits = false;
+    const isTooLarge = canSplit && boxes.sizeOf(box) > (splitting.largestBox ?? Infinity);
+    let splits = isTooLarge;
     for (let n = from; n < to && canSplit && !splits; n++) {
       splits = this.#isSplit(this.#sources.at(n), targets);
     }

@@ -27,6 +27,16 @@ export interface MultipoleExports {
     ...range: Range
   ) => void;
   readonly valuesDouble: MultipoleExports['valuesSingle'];
+  readonly latticeSingle: (
+    sources: number,
+    targets: number,
+    table: number,
+    lattice: number,
+    order: number,
+    list: number,
+    ...range: Range
+  ) => void;
+  readonly latticeDouble: MultipoleExports['latticeSingle'];
   readonly nearSingle: (
     sources: number,
     targets: number,
@@ -48,6 +58,7 @@ export interface MultipoleKernels {
   readonly down: MultipoleExports['downSingle'];
   readonly values: MultipoleExports['valuesSingle'];
   readonly near: MultipoleExports['nearSingle'];
+  readonly lattice: MultipoleExports['latticeSingle'];
 }
 
 export function kernelsOf(exports: MultipoleExports, {precision}: Level): MultipoleKernels {
@@ -60,6 +71,7 @@ export function kernelsOf(exports: MultipoleExports, {precision}: Level): Multip
         down: exports.downSingle,
         values: exports.valuesSingle,
         near: exports.nearSingle,
+        lattice: exports.latticeSingle,
       }
     : {
         multipoles: exports.multipolesDouble,
@@ -69,6 +81,7 @@ export function kernelsOf(exports: MultipoleExports, {precision}: Level): Multip
         down: exports.downDouble,
         values: exports.valuesDouble,
         near: exports.nearDouble,
+        lattice: exports.latticeDouble,
       };
 }
 

@@ -16,6 +16,9 @@ export interface LoadedTable {
   readonly size: number;
   readonly sourceSize: number;
   readonly targetSize: number;
+  /** Starts of the runs of an expansion, and address of the places that derivatives go to. */
+  readonly harmonicStarts: readonly number[];
+  readonly termPlaces: number;
   /** By component + 2 separation + 1, x fastest: which input of which operator, or −1. */
   readonly slots: Int32Array;
 }
@@ -70,7 +73,10 @@ export function loadTable(bytes: Uint8Array, arena: Arena): LoadedTable {
   ]);
   const sourceSize = head.sourceStarts[8];
   const targetSize = head.targetStarts[8];
-  return {level, address, size, sourceSize, targetSize, slots: slotsOf(head)};
+  const termPlaces = writeWords(arena, terms.places);
+  const {harmonicStarts} = head;
+  const slots = slotsOf(head);
+  return {level, address, size, sourceSize, targetSize, harmonicStarts, termPlaces, slots};
 }
 
 /** Where each harmonic is in an expansion: by parity, then by degree, as in tables/harmonics.ts. */
@@ -117,8 +123,9 @@ function recurrenceFactors(degree: number): number[] {
 function termsOf(
   head: TableHead,
   sequence: readonly number[],
-): {words: number[]; factors: number[]} {
+): {words: number[]; places: number[]; factors: number[]} {
   const table = placeTable(head);
+  const places: number[] = [];
   const rows = new Map(sequence.map((place, row) => [place, row]));
   const words: number[] = [];
   const factors: number[] = [];
@@ -126,9 +133,10 @@ function termsOf(
     const row = rows.get(table[to]);
     if (row === undefined) throw new RangeError('expected every harmonic in the sequence');
     words.push(axis, table[from], row);
+    places.push(table[to]);
     factors.push(factor);
   }
-  return {words, factors};
+  return {words, places, factors};
 }
 
 function slotsOf({level: {separation}, far}: TableHead): Int32Array {

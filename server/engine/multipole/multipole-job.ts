@@ -1,6 +1,7 @@
 import type {FieldJob} from '../jobs.ts';
 import {effortFor} from './effort.ts';
 import type {TargetTree} from './interactions.ts';
+import type {Lattice, SortedLeaves} from './lattice.ts';
 import type {LoadedTable} from './load-table.ts';
 import type {SourceTree} from './source-tree.ts';
 import type {TargetValues} from './structs.ts';
@@ -30,6 +31,10 @@ export interface Part {
   readonly sources: SourceTree;
   /** Under which the tree is kept, if it is. */
   readonly treeKey?: string;
+  /** The targets as a lattice that the boxes are aligned to, if they are one. */
+  readonly lattice?: Lattice;
+  /** What of the leaves is evaluated how, once the table is chosen. */
+  readonly sorted?: SortedLeaves;
   readonly targets: TargetTree;
   /** Sums at the sorted targets [C/m, C/m²] in the frame of the part. */
   readonly values: TargetValues;
@@ -45,6 +50,8 @@ export interface Work {
   readonly part: number;
   readonly first: number;
   readonly last: number;
+  /** Which of the whole boxes of a lattice; other leaves if there is none. */
+  readonly whole?: number;
 }
 
 export const SAMPLING = -1;

@@ -23,7 +23,7 @@ export function computeMultipoleBlock(
   block: number,
   workplace: Workplace,
 ): BlockReport {
-  const {part: index, first, last} = job.work[block];
+  const {part: index, first, last, whole} = job.work[block];
   const nothing = {coincident: [], coincidentCount: 0, reach: job.reach};
   if (index === SAMPLING) {
     sumSamples(job.field, job.samples, first, last, workplace);
@@ -42,8 +42,15 @@ export function computeMultipoleBlock(
     kernels.near(sources, targets, leaves, first, last, reach, scratch);
   } else if (job.phase === 'far') {
     kernels.far(sources, targets, address, first, last, scratch);
+  } else if (whole === undefined) {
+    const others = (part.sorted?.others ?? part.targets.leaves).byteOffset;
+    kernels.values(sources, targets, address, others, first, last, scratch);
   } else {
-    kernels.values(sources, targets, address, leaves, first, last, scratch);
+    const boxes = part.sorted?.whole[whole];
+    if (!boxes) throw new RangeError('expected whole boxes');
+    const order = part.targets.order.byteOffset;
+    const list = boxes.leaves.byteOffset;
+    kernels.lattice(sources, targets, address, boxes.address, order, list, first, last, scratch);
   }
   return nothing;
 }
@@ -102,8 +109,9 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   }
   const used = better.separation === level.separation ? wanted : effort;
   const table = tableOf(tools, efforts[used].level.name);
-  for (const part of parts) makeExpansions(part, table, tools);
-  return atPhase(job, 'far', farWork(parts), {
+  const expanded = parts.map(part => makeExpansions(part, table, tools));
+  return atPhase(job, 'far', farWork(expanded), {
+    parts: expanded,
     effort: used,
     table,
     coincident: listed(found),
@@ -142,14 +150,11 @@ function writeTotals(field: FieldJob, totals: Totals): void {
   const results: Results = {
     result: place => totals[place === RESULT.v ? 0 : 1 + place - RESULT.e],
   };
-  field.columns.forEach((column, n) => {
-    writeColumn(
-      column,
-      results,
-      scales,
-      field.out.subarray(n * field.count, (n + 1) * field.count),
-    );
-  });
+  // From the last, since the magnitude is made of components that are scaled where they lie.
+  for (let n = field.columns.length - 1; n >= 0; n--) {
+    const out = field.out.subarray(n * field.count, (n + 1) * field.count);
+    writeColumn(field.columns[n], results, scales, out);
+  }
 }
 
 function usedTable({table}: MultipoleJob): LoadedTable {

@@ -41,18 +41,28 @@ export interface Positions {
   readonly z: Float64Array;
 }
 
-/** @param capacity charges that a box may hold without being split */
+/**
+ * @param spare memory that is needed only while the tree is made
+ * @param capacity charges that a box may hold without being split
+ */
 export function sourceTree(
   arena: Arena,
+  spare: Arena,
   charges: Positions & {readonly q: Float64Array},
   root: Cube,
   capacity: number,
 ): SourceTree {
   const {count} = charges;
-  const columns = [0, 1, 2, 3].map(() => new Float64Array(count));
+  const columns = [0, 1, 2, 3].map(() => spare.doubles(count));
   const [x, y, z, q] = columns;
   const order = arena.integers(count);
-  const points = sortedPoints([charges.x, charges.y, charges.z, charges.q], columns, order, root);
+  const points = sortedPoints(
+    [charges.x, charges.y, charges.z, charges.q],
+    columns,
+    order,
+    root,
+    spare,
+  );
   const members = arena.integers(count).fill(1);
   const boxes = new Boxes(root, 0, count);
   const levels = [0, 1];
@@ -76,7 +86,7 @@ export function sourceTree(
     packed[at + 3] = q[i] * chargeScale;
   }
   const boxArray = arena.doubles(4 * (boxes.count + BOX_PADDING));
-  boxArray.set(boxes.geometry.values);
+  boxes.geometry.copyTo(boxArray);
   return {
     root,
     count,
@@ -85,9 +95,9 @@ export function sourceTree(
     order,
     boxCount: boxes.count,
     boxes: boxArray,
-    ranges: arena.keep(boxes.ranges.values),
-    children: arena.keep(boxes.children.values),
-    octants: arena.keep(boxes.octants.values),
+    ranges: boxes.ranges.copyTo(arena.integers(boxes.ranges.length)),
+    children: boxes.children.copyTo(arena.integers(boxes.children.length)),
+    octants: boxes.octants.copyTo(arena.integers(boxes.octants.length)),
     levels,
     leaves: arena.keep(leaves),
     members,

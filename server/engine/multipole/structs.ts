@@ -25,9 +25,8 @@ export function writeSources(arena: Arena, tree: SourceTree): number {
 /** Place of the addresses of expansions in the struct of sources. */
 const EXPANSIONS = 7;
 
-/** Addresses of the expansions of a tree of sources. */
+/** Addresses of what far boxes take of a tree of sources, and of an expansion of zeros. */
 export interface SourceExpansions {
-  readonly multipoles: number;
   readonly compressed: number;
   readonly zeros: number;
 }
@@ -35,7 +34,8 @@ export interface SourceExpansions {
 export function setExpansions(
   arena: Arena,
   sourcesAddress: number,
-  {multipoles, compressed, zeros}: SourceExpansions,
+  multipoles: number,
+  {compressed, zeros}: SourceExpansions,
 ): void {
   const words = new Int32Array(arena.buffer, sourcesAddress, EXPANSIONS + 3);
   words.set([multipoles, compressed, zeros], EXPANSIONS);

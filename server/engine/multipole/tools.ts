@@ -16,6 +16,8 @@ export interface MultipoleStation {
 export interface Tools extends MultipoleStation {
   /** Memory of the call. */
   readonly arena: Arena;
+  /** Memory that is given back at the end of the step. */
+  readonly spare: Arena;
   readonly forms: Forms;
   readonly stop: Stop;
 }

@@ -13,7 +13,7 @@ const MOVE = 40;
 const SLOT_BITS = 11;
 
 /** out[t] += matrix · input[t] for four runs of numbers, `inputStep` and `outStep` bytes apart. */
-function apply<T>(operator: Operator, input: usize, inputStep: usize, outs: usize): void {
+export function apply<T>(operator: Operator, input: usize, inputStep: usize, outs: usize): void {
   const size = <usize>sizeof<T>();
   for (let g = 0; g < operator.groupCount; g++) {
     const group = operator.groups + <usize>g * GROUP;

@@ -2,3 +2,4 @@
 export * from './multipole-points';
 export * from './multipole-translate';
 export * from './multipole-near';
+export * from './multipole-lattice';
