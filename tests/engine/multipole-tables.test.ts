@@ -7,7 +7,7 @@ import {
   regularHarmonics,
 } from '../../server/engine/multipole/tables/harmonics.ts';
 import {levels, type Level} from '../../server/engine/multipole/tables/levels.ts';
-import {GROUP_STRIDE} from '../../server/engine/multipole/tables/operator.ts';
+import {GROUP_STRIDE, ROW_UNIT} from '../../server/engine/multipole/tables/operator.ts';
 import {
   readTable,
   writeTable,
@@ -75,16 +75,21 @@ class Translator {
     }
   }
 
-  /** The sums with signs of inputs, each run where the operator takes it from. */
-  gather(operator: StoredOperator, inputs: readonly Float64Array[]): Float64Array {
-    const out = new Float64Array(operator.inputLength);
-    const stride = operator.moves.length / 8;
-    for (let move = 0; move < operator.moves.length; move += stride) {
-      const [start, length, ...targets] = operator.moves.slice(move, move + stride);
-      inputs.forEach((input, s) => {
-        for (let g = 0; g < inputs.length; g++) {
-          const sign = isOdd(g & s) ? -1 : 1;
-          for (let j = 0; j < length; j++) out[targets[g] + j] += sign * input[start + j];
+  /** The sums with signs of inputs, each chunk where the operator takes it from. */
+  gather({inputLength, moves}: StoredOperator, inputs: readonly Float64Array[]): Float64Array {
+    const out = new Float64Array(inputLength);
+    const [count, ...entries] = moves;
+    const stride = 1 + inputs.length;
+    expect(entries).toHaveLength(count * stride);
+    for (let move = 0; move < entries.length; move += stride) {
+      const [place, ...targets] = entries.slice(move, move + stride);
+      targets.forEach((target, g) => {
+        for (let j = 0; j < ROW_UNIT; j++) {
+          let sum = 0;
+          inputs.forEach(
+            (input, s) => (sum += isOdd(g & s) ? -input[place + j] : input[place + j]),
+          );
+          out[target + j] = sum;
         }
       });
     }

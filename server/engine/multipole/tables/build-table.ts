@@ -1,6 +1,7 @@
 import {compress, forBlocks, type Basis, type Compression} from './compression.ts';
 import {
   corner,
+  part,
   dense,
   squareSum,
   submatrix,
@@ -12,6 +13,7 @@ import {byParity, harmonicCount} from './harmonics.ts';
 import type {Level} from './levels.ts';
 import {offsetClasses, reflectionsOf, signCount} from './offsets.ts';
 import {addGroup, emptyOperator, padded, ROW_UNIT, type Operator} from './operator.ts';
+import {Choice, fullStaircase, type Staircase} from './staircase.ts';
 import {childToParent, multipoleToLocal} from './translations.ts';
 
 /**
@@ -42,8 +44,8 @@ export interface Table {
 }
 
 /**
- * An operator on the w_g of up to 8 inputs. `moves` says, for each parity b, where its run begins in
- * an input, how long it is, and where it goes for each g (8 places, unused ones 0).
+ * An operator on the w_g of up to 8 inputs. `moves` says how many chunks of ROW_UNIT numbers are
+ * taken, and of each: its place in every input, and where its sum goes for each g.
  */
 export interface SignedOperator extends Operator {
   /** Axes whose sign matters, as bits. */
@@ -56,8 +58,6 @@ export interface FarOperator extends SignedOperator {
   readonly offset: readonly number[];
 }
 
-export const MOVE_STRIDE = 10;
-
 export function buildTable(level: Level): Table {
   const {degree, separation} = level;
   const n = harmonicCount(degree);
@@ -65,10 +65,9 @@ export function buildTable(level: Level): Table {
   const harmonicStarts = starts(parities.map(own => padded(own.length)));
   const compression = compress(degree, separation);
   const far = farBlocks(level, parities, compression);
-  const sizesOf = (side: 'rows' | 'columns'): number[] =>
-    parities.map((_, parity) => Math.max(...far.map(each => each[side][parity])));
-  const sourceStarts = starts(sizesOf('columns'));
-  const targetStarts = starts(sizesOf('rows'));
+  const {sourceSizes, targetSizes} = sizesOf(far);
+  const sourceStarts = starts(sourceSizes);
+  const targetStarts = starts(targetSizes);
 
   const compressor = emptyOperator();
   const expander = emptyOperator();
@@ -96,19 +95,22 @@ export function buildTable(level: Level): Table {
     up: signedOperator(
       7,
       upBlock,
-      parities.map(own => padded(own.length)),
-      parities.map(own => padded(own.length)),
+      parities.map(own =>
+        fullStaircase(
+          padded(own.length),
+          parities.map(other => padded(other.length)),
+        ),
+      ),
       harmonicStarts,
       harmonicStarts,
     ),
     down: downOperator(upBlock, parities, harmonicStarts),
-    far: far.map(({offset, rows, columns, blocks}) => ({
+    far: far.map(({offset, staircases, blocks}) => ({
       offset,
       ...signedOperator(
         reflectionsOf(offset),
-        (a, b) => corner(blocks[8 * a + b] ?? dense(0, 0), rows[a], columns[b]),
-        rows,
-        columns,
+        (a, b) => blocks[8 * a + b] ?? dense(0, 0),
+        staircases,
         sourceStarts,
         targetStarts,
       ),
@@ -122,33 +124,44 @@ const starts = (sizes: readonly number[]): number[] =>
 function signedOperator(
   mask: number,
   block: (a: number, b: number) => Dense,
-  rows: readonly number[],
-  columns: readonly number[],
+  staircases: readonly Staircase[],
   inputStarts: readonly number[],
   outputStarts: readonly number[],
 ): SignedOperator {
   const operator = emptyOperator();
-  const moves = columns.flatMap((count, b) => [inputStarts[b], count, 0, 0, 0, 0, 0, 0, 0, 0]);
+  const targets = new Map<number, number[]>();
   let start = 0;
-  for (let a = 0; a < 8; a++) {
-    const blocks: Dense[] = [];
-    const from = start;
-    for (let g = 0; g < signCount(mask); g++) {
-      const b = a ^ spread(g, mask);
-      moves[MOVE_STRIDE * b + 2 + g] = start;
-      blocks.push(block(a, b));
-      start += columns[b];
+  staircases.forEach(({chunks, steps}, a) => {
+    const used = chunks.slice(0, Math.max(0, ...steps.map(({count}) => count)));
+    used.forEach(({parity, start: column}, n) => {
+      const place = inputStarts[parity] + column;
+      const own = targets.get(place) ?? [];
+      own[packed(a ^ parity, mask)] = start + ROW_UNIT * n;
+      targets.set(place, own);
+    });
+    for (const {row, rows, count} of steps) {
+      const tiles = used
+        .slice(0, count)
+        .map(({parity, start: column}) => part(block(a, parity), row, rows, column, ROW_UNIT));
+      addGroup(operator, tiles, rows, start, outputStarts[a] + row);
     }
-    if (rows[a] > 0 && start > from) addGroup(operator, blocks, rows[a], from, outputStarts[a]);
-  }
-  return {...operator, mask, inputLength: start, moves};
+    start += ROW_UNIT * used.length;
+  });
+  // The last chunk of the input takes the sums that nobody needs.
+  const moves = [...targets]
+    .sort(([a], [b]) => a - b)
+    .flatMap(([place, own]) => [
+      place,
+      ...Array.from({length: signCount(mask)}, (_, g) => own[g] ?? start),
+    ]);
+  return {...operator, mask, inputLength: start + ROW_UNIT, moves: [targets.size, ...moves]};
 }
 
-/** The bits of `g` put where `mask` has ones. */
-function spread(g: number, mask: number): number {
+/** The bits of `bits` where `mask` has ones, side by side. */
+function packed(bits: number, mask: number): number {
   let out = 0;
   for (let axis = 0, bit = 0; axis < 3; axis++) {
-    if ((mask >> axis) & 1) out |= ((g >> bit++) & 1) << axis;
+    if ((mask >> axis) & 1) out |= ((bits >> axis) & 1) << bit++;
   }
   return out;
 }
@@ -178,14 +191,13 @@ interface FarBlocks {
   readonly offset: readonly number[];
   /** By 8 a + b; those that are 0 by symmetry are undefined. */
   readonly blocks: readonly (Dense | undefined)[];
-  /** What of each parity is kept. */
-  readonly rows: readonly number[];
-  readonly columns: readonly number[];
+  /** What is kept, by parity of the target. */
+  readonly staircases: readonly Staircase[];
 }
 
 /** The translations of all offsets, compressed, and how much of each the level needs. */
 function farBlocks(
-  {degree, separation, compression}: Level,
+  {degree, separation, compression, precision}: Level,
   parities: readonly number[][],
   {sources, targets, nearest}: Compression,
 ): FarBlocks[] {
@@ -209,71 +221,59 @@ function farBlocks(
     });
     return {offset, mask, blocks};
   });
-  const allowed = (compression ** 2 * total) / all.length;
-  return all.map(({offset, mask, blocks}) => {
-    const limit = sizeLimit(blocks, targets, sources, allowed / signCount(mask));
-    const kept = (side: readonly Basis[]): number[] =>
-      side.map(({sizes}) => ROW_UNIT * keptUnits(sizes, limit));
-    return {offset, blocks, rows: kept(targets), columns: kept(sources)};
-  });
+  const choices = all.map(({mask, blocks}) =>
+    parities.map(
+      (_, a) => new Choice(blocks.slice(8 * a, 8 * a + 8), signCount(mask), UNIT_COST[precision]),
+    ),
+  );
+  const price = priceFor(choices.flat(), compression ** 2 * total);
+  return all.map(({offset, blocks}, n) => ({
+    offset,
+    blocks,
+    staircases: choices[n].map(choice => ({
+      chunks: choice.chunks,
+      steps: choice.steps(price).steps,
+    })),
+  }));
+}
+
+/** Cost of a number in a step of ROW_UNIT rows, relative to one in ROW_BLOCK rows. */
+const UNIT_COST = {single: 1.3, double: 1};
+
+/** The highest price of a multiplication at which no more than `allowed` is lost. */
+function priceFor(choices: readonly Choice[], allowed: number): number {
+  const isAllowed = (price: number): boolean => {
+    let lost = 0;
+    for (const choice of choices) lost += choice.steps(price).lost;
+    return lost <= allowed;
+  };
+  let low = -80;
+  let high = 0;
+  // In powers of two of what is allowed, to a thousandth of one.
+  for (let step = 0; step < 17; step++) {
+    const middle = (low + high) / 2;
+    if (isAllowed(allowed * 2 ** middle)) low = middle;
+    else high = middle;
+  }
+  return allowed * 2 ** low;
+}
+
+/** What all far translations together take from a source and give to a target, by parity. */
+function sizesOf(far: readonly FarBlocks[]): {sourceSizes: number[]; targetSizes: number[]} {
+  const sourceSizes = new Array<number>(8).fill(0);
+  const targetSizes = new Array<number>(8).fill(0);
+  for (const {staircases} of far) {
+    staircases.forEach(({chunks, steps}, a) => {
+      for (const {row, rows, count} of steps) {
+        targetSizes[a] = Math.max(targetSizes[a], row + rows);
+        for (const {parity, start} of chunks.slice(0, count)) {
+          sourceSizes[parity] = Math.max(sourceSizes[parity], start + ROW_UNIT);
+        }
+      }
+    });
+  }
+  return {sourceSizes, targetSizes};
 }
 
 const countAbove = (sizes: readonly number[], limit: number): number =>
   sizes.filter(size => size >= limit).length;
-
-/** In whole row units, up or down: what that takes away is counted too. */
-const keptUnits = (sizes: readonly number[], limit: number): number =>
-  Math.round(countAbove(sizes, limit) / ROW_UNIT);
-
-/** The largest limit on singular values below which no more than `allowed` is lost. */
-function sizeLimit(
-  blocks: readonly (Dense | undefined)[],
-  targets: readonly Basis[],
-  sources: readonly Basis[],
-  allowed: number,
-): number {
-  const candidates = targets.flatMap(({sizes}) => sizes).sort((a, b) => a - b);
-  const losses = blocks.map(block => block && lossesOf(block));
-  const lost = (limit: number): number => {
-    const rows = targets.map(({sizes}) => keptUnits(sizes, limit));
-    const columns = sources.map(({sizes}) => keptUnits(sizes, limit));
-    return losses.reduce(
-      (sum, own, index) => sum + (own ? own(rows[index >> 3], columns[index & 7]) : 0),
-      0,
-    );
-  };
-  let low = 0;
-  let high = candidates.length;
-  while (high - low > 1) {
-    const middle = (low + high) >> 1;
-    if (lost(candidates[middle]) <= allowed) low = middle;
-    else high = middle;
-  }
-  return candidates[low];
-}
-
-/** Σ of squares outside the first rows and columns, both in row units. */
-function lossesOf({rows, columns, values}: Dense): (rows: number, columns: number) => number {
-  const down = Math.ceil(rows / ROW_UNIT);
-  const across = Math.ceil(columns / ROW_UNIT);
-  // Sums of what is lost and not differences of what is kept, which would have no digits left.
-  const right = new Float64Array((down + 1) * (across + 1));
-  for (let i = 0; i < rows; i++) {
-    for (let j = 0; j < columns; j++) {
-      const unit = ((i / ROW_UNIT) | 0) * (across + 1) + ((j / ROW_UNIT) | 0);
-      right[unit] += values[i * columns + j] ** 2;
-    }
-  }
-  // Of unit row i: all from column j on.
-  for (let i = 0; i < down; i++) {
-    for (let j = across - 1; j >= 0; j--) {
-      right[i * (across + 1) + j] += right[i * (across + 1) + j + 1];
-    }
-  }
-  return (keptRows, keptColumns) => {
-    let sum = 0;
-    const from = Math.min(keptColumns, across);
-    for (let i = 0; i < down; i++) sum += right[i * (across + 1) + (i < keptRows ? from : 0)];
-    return sum;
-  };
-}

@@ -99,12 +99,23 @@ export function submatrix(
   return out;
 }
 
-/** The first rows and columns. */
-export function corner(a: Dense, rows: number, columns: number): Dense {
+/** The first rows and columns; 0 where there are none. */
+export const corner = (a: Dense, rows: number, columns: number): Dense =>
+  part(a, 0, rows, 0, columns);
+
+/** Rows and columns from the first that are given on; 0 where there are none. */
+export function part(
+  a: Dense,
+  firstRow: number,
+  rows: number,
+  firstColumn: number,
+  columns: number,
+): Dense {
   const out = dense(rows, columns);
-  for (let i = 0; i < Math.min(rows, a.rows); i++) {
-    for (let j = 0; j < Math.min(columns, a.columns); j++) {
-      out.values[i * columns + j] = a.values[i * a.columns + j];
+  for (let i = 0; i < Math.min(rows, a.rows - firstRow); i++) {
+    const from = (firstRow + i) * a.columns + firstColumn;
+    for (let j = 0; j < Math.min(columns, a.columns - firstColumn); j++) {
+      out.values[i * columns + j] = a.values[from + j];
     }
   }
   return out;

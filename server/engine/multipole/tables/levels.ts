@@ -16,14 +16,14 @@ export interface Level {
 
 /** From coarse to fine. */
 export const levels: readonly Level[] = [
-  {name: 'a', separation: 1, degree: 6, compression: 6e-3, precision: 'single'},
-  {name: 'b', separation: 1, degree: 9, compression: 8e-4, precision: 'single'},
-  {name: 'c', separation: 1, degree: 12, compression: 1.5e-4, precision: 'single'},
-  {name: 'd', separation: 1, degree: 14, compression: 4e-5, precision: 'single'},
-  {name: 'e', separation: 1, degree: 17, compression: 1e-5, precision: 'single'},
-  {name: 'f', separation: 1, degree: 20, compression: 1.7e-6, precision: 'single'},
-  {name: 'g', separation: 2, degree: 13, compression: 3e-7, precision: 'double'},
-  {name: 'h', separation: 2, degree: 16, compression: 3e-8, precision: 'double'},
-  {name: 'i', separation: 2, degree: 19, compression: 3e-9, precision: 'double'},
-  {name: 'j', separation: 2, degree: 21, compression: 4e-10, precision: 'double'},
+  {name: 'a', separation: 1, degree: 6, compression: 3.3e-3, precision: 'single'},
+  {name: 'b', separation: 1, degree: 9, compression: 5.2e-4, precision: 'single'},
+  {name: 'c', separation: 1, degree: 12, compression: 1.03e-4, precision: 'single'},
+  {name: 'd', separation: 1, degree: 14, compression: 3.2e-5, precision: 'single'},
+  {name: 'e', separation: 1, degree: 17, compression: 8e-6, precision: 'single'},
+  {name: 'f', separation: 1, degree: 20, compression: 1.35e-6, precision: 'single'},
+  {name: 'g', separation: 2, degree: 13, compression: 2.3e-7, precision: 'double'},
+  {name: 'h', separation: 2, degree: 16, compression: 2e-8, precision: 'double'},
+  {name: 'i', separation: 2, degree: 19, compression: 2e-9, precision: 'double'},
+  {name: 'j', separation: 2, degree: 21, compression: 2.8e-10, precision: 'double'},
 ];

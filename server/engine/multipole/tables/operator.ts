@@ -3,7 +3,7 @@ import type {Dense} from './dense.ts';
 /** Rows come in multiples of this, so that vectors of 2 or 4 numbers divide them. */
 export const ROW_UNIT = 4;
 /** As many rows as the kernel takes at once; what is left over comes in ROW_UNIT. */
-const ROW_BLOCK = 8;
+export const ROW_BLOCK = 8;
 
 export const padded = (count: number): number => Math.ceil(count / ROW_UNIT) * ROW_UNIT;
 
