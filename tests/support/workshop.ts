@@ -31,6 +31,8 @@ export interface Asked {
   /** Where the charges may be known by. */
   readonly digest?: string;
   readonly changes?: Partial<MultipoleJob>;
+  /** Whether the blocks of a phase are computed from the last to the first. */
+  readonly isReversed?: boolean;
 }
 
 export interface Done {
@@ -40,6 +42,8 @@ export interface Done {
   readonly columns: readonly Float64Array[];
   readonly hits: number;
   readonly misses: number;
+  /** [bytes] of the process when all was computed. */
+  readonly resident: number;
   /** [ms] of processor time, by step: phase and level. */
   readonly steps: readonly {readonly name: string; readonly milliseconds: number}[];
 }
@@ -125,7 +129,9 @@ export function createWorkshop(bytes = 2 ** 31) {
         const current: Job = job;
         const name: string = current.kind === 'multipole' ? current.phase : 'direct';
         timed(name, () => {
-          for (let block = 0; block < blockCount(current); block++) {
+          const count = blockCount(current);
+          for (let n = 0; n < count; n++) {
+            const block = asked.isReversed ? count - 1 - n : n;
             computeBlock(current, block, NEVER, workplaceOf(scratch));
             heap.release(scratch);
           }
@@ -136,13 +142,14 @@ export function createWorkshop(bytes = 2 ** 31) {
         job = timed(`after ${name}`, () => advance(current, tools));
         heap.release(scratch);
       }
+      const resident = process.memoryUsage().rss;
       const columns = field.columns.map((_, n) =>
         field.out.slice(n * field.count, (n + 1) * field.count),
       );
       const method = job.kind === 'multipole' ? 'multipole' : 'direct';
       const {hits, misses} = forms.report;
       hold.add(forms.report);
-      return {method, job, columns, hits, misses, steps};
+      return {method, job, columns, hits, misses, resident, steps};
     } finally {
       heap.release(tag);
       heap.release(scratch);

@@ -10,8 +10,8 @@ import {efforts, effortFor, type Effort} from './effort.ts';
 const DIRECT = {potential: 2.0e-6, field: 2.25e-6};
 const NEAR = {single: 2.0e-6, double: 2.4e-6};
 /** [ms] a charge and a target, apart from what depends on the level: sorting, lists, copies. */
-const CHARGE = 6e-4;
-const TARGET = 8e-4;
+const CHARGE = 3.8e-4;
+const TARGET = 5e-4;
 /** [ms] a pair of charge or target and a number of an expansion. */
 const HARMONIC = 4.5e-7;
 /** [ms] a number of a matrix of far boxes, for one box. */
@@ -20,7 +20,7 @@ const FAR = 1.1e-7;
 const BOX = 8e-3;
 /** [ms] a call: phases, samples of few targets, memory. */
 const CALL = 3;
-const SAMPLES = 256;
+const SAMPLES = 240;
 
 /** Numbers of the matrices that one box is multiplied by, by level. */
 const FAR_NUMBERS: Readonly<Record<string, number>> = {

@@ -19,12 +19,12 @@ export interface Effort {
 type Row = readonly [potentialError: number, fieldError: number, pairs: number, capacity: number];
 
 const rows: Readonly<Record<string, Row>> = {
-  a: [9e-4, 8e-3, 6000, 50],
-  b: [2e-4, 1.2e-3, 8000, 64],
-  c: [3e-5, 2.5e-4, 10_000, 64],
-  d: [8e-6, 5.5e-5, 12_000, 80],
-  e: [2.6e-6, 1.6e-5, 13_000, 80],
-  f: [6.8e-7, 3.9e-6, 16_000, 90],
+  a: [9e-4, 8e-3, 1500, 40],
+  b: [2e-4, 1.2e-3, 2200, 48],
+  c: [3e-5, 2.5e-4, 3400, 56],
+  d: [8e-6, 5.5e-5, 5300, 64],
+  e: [2.6e-6, 1.6e-5, 8700, 72],
+  f: [6.8e-7, 3.9e-6, 14_000, 90],
   g: [8e-8, 8e-7, 12_000, 80],
   h: [7e-9, 9e-8, 16_000, 90],
   i: [8e-10, 9.5e-9, 30_000, 120],
@@ -55,12 +55,34 @@ export function effortFor(
   share: FarShare = usualShare,
 ): number {
   const index = efforts.findIndex(
-    ({potentialError, fieldError}) =>
-      potentialError * share.potential <= MARGIN * tolerance &&
-      (!isField || fieldError * share.field <= MARGIN * tolerance),
+    effort => expectedError(effort, isField, share) <= MARGIN * tolerance,
   );
   return index < 0 ? efforts.length - 1 : index;
 }
+
+/**
+ * The effort to go on with, once more is known and the boxes of `current` are made: others of its
+ * separation use the same boxes, and the finest of them is worth a try before all begins again.
+ */
+export function effortWithin(
+  current: number,
+  wanted: number,
+  tolerance: number,
+  isField: boolean,
+  share: FarShare,
+): number {
+  const {separation} = efforts[current].level;
+  if (efforts[wanted].level.separation === separation) return wanted;
+  if (wanted < current) return current;
+  const finest = efforts.findLastIndex(({level}) => level.separation === separation);
+  return expectedError(efforts[finest], isField, share) <= tolerance ? finest : wanted;
+}
+
+const expectedError = (
+  {potentialError, fieldError}: Effort,
+  isField: boolean,
+  share: FarShare,
+): number => Math.max(potentialError * share.potential, isField ? fieldError * share.field : 0);
 
 /** What comes after an effort that left `error`: the coarsest that is expected to do, if there is one. */
 export function nextEffort(

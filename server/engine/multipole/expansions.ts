@@ -13,18 +13,22 @@ export function makeExpansions(part: Part, table: LoadedTable, tools: Tools): Pa
   const {sources, sourcesAddress, targets, treeKey} = part;
   const bytes = numberSize(table.level) * table.size;
   const forLocals = bytes * (targets.boxCount + BOX_PADDING);
-  const forMultipoles = bytes * (sources.boxCount + BOX_PADDING);
-  // Multipoles are needed only until all that is taken of them is made: then this is free again.
-  const room = arena.take(Math.max(forLocals, forMultipoles));
+  let room: number | undefined;
   const make = (own: Arena): SourceExpansions => {
-    const expansions = expansionsOf(sources, sourcesAddress, room, table, own, tools);
-    new Uint8Array(arena.buffer, room, Math.max(forLocals, forMultipoles)).fill(0);
+    const forMultipoles = bytes * (sources.boxCount + BOX_PADDING);
+    const size = Math.max(forLocals, forMultipoles);
+    const multipoles = arena.take(size);
+    const expansions = expansionsOf(sources, sourcesAddress, multipoles, table, own, tools);
+    // They are not needed any more, and local expansions may lie there.
+    new Uint8Array(arena.buffer, multipoles, size).fill(0);
+    room = multipoles;
     return expansions;
   };
   const expansions =
     treeKey === undefined
       ? make(arena)
       : forms.get(`${treeKey}:expansions:${table.level.name}`, make);
+  room ??= arena.take(forLocals);
   setExpansions(arena, sourcesAddress, room, expansions);
   setLocals(arena, part.targetsAddress, room);
   const {lattice} = part;

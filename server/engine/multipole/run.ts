@@ -5,7 +5,7 @@ import {RESULT} from '../methods/direct-sum.ts';
 import type {Workplace} from '../workplace.ts';
 import type {LoadedTable} from './load-table.ts';
 import {begin} from './begin.ts';
-import {effortFor, efforts, nextEffort} from './effort.ts';
+import {effortFor, efforts, effortWithin, nextEffort} from './effort.ts';
 import {farWork, handDown, makeExpansions, valuesWork} from './expansions.ts';
 import {addUp, estimateError, isReached} from './finish.ts';
 import {kernelsOf} from './kernels.ts';
@@ -100,14 +100,13 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   for (const part of parts) sumFlagged(field, part, found, tools.stop);
   const near = addUp(field, parts, tools.arena);
   const share = farShare(near, job.samples);
-  const wanted = Math.max(leastEffort, effortFor(tolerance, field.sum !== 'potential', share));
-  const level = efforts[effort].level;
-  const better = efforts[wanted].level;
+  const isField = field.sum !== 'potential';
+  const wanted = Math.max(leastEffort, effortFor(tolerance, isField, share));
+  const used = Math.max(leastEffort, effortWithin(effort, wanted, tolerance, isField, share));
   // Other boxes are near with another separation, so all begins again.
-  if (better.separation !== level.separation && wanted > effort) {
-    return beginWith(job, {effort: wanted}, tools);
+  if (efforts[used].level.separation !== efforts[effort].level.separation) {
+    return beginWith(job, {effort: used}, tools);
   }
-  const used = better.separation === level.separation ? wanted : effort;
   const table = tableOf(tools, efforts[used].level.name);
   const expanded = parts.map(part => makeExpansions(part, table, tools));
   return atPhase(job, 'far', farWork(expanded), {

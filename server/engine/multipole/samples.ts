@@ -8,8 +8,8 @@ import {SAMPLING, type Samples, type Totals, type Work} from './multipole-job.ts
 import {rootOfSquares} from './norms.ts';
 
 /** Targets that are summed directly as well: to choose a level, and to see what was reached. */
-const FIRST_SAMPLES = 64;
-const CHECKED_SAMPLES = 256;
+const FIRST_SAMPLES = 32;
+const CHECKED_SAMPLES = 208;
 /** Evaluations of a piece of work: some 20 ms of them. */
 const PAIRS_OF_WORK = 8e6;
 

@@ -135,7 +135,10 @@ function mergeAlike(
   boxes.ranges.set(2 * box + 1, from + 1);
 }
 
-/** The smallest cube around points, widened by twos until it holds `others` as well. */
+/** Room around charges, so that targets that reach a little further need no other tree. */
+const MARGIN = 1.1;
+
+/** A cube around points, widened by twos until it holds `others` as well. */
 export function rootCube(points: Positions, others: Bounds): Cube {
   const own = boundsOf(points);
   const [x, y, z] = [0, 1, 2].map(axis => (own.low[axis] + own.high[axis]) / 2);
@@ -147,7 +150,7 @@ export function rootCube(points: Positions, others: Bounds): Cube {
     ),
   );
   // A little more, so that rounding leaves nothing outside.
-  let size = extent * (1 + 2 ** -20);
+  let size = extent * MARGIN;
   const needed = 2 * furthest * (1 + 2 ** -20);
   if (size === 0) size = needed > 0 ? needed : 1;
   while (size < needed) size *= 2;
