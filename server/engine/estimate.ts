@@ -1,5 +1,6 @@
 import type {Estimate} from '../../shared/api.ts';
 import {PAIR_WEIGHT} from './limits.ts';
+import {multipoleMilliseconds} from './multipole/cost-model.ts';
 import type {BoundKind, SumKind} from './methods/direct-sum.ts';
 import {boundKind, sumKind} from './pack.ts';
 import type {Plan} from './plan.ts';
@@ -21,6 +22,21 @@ export function estimateOf(plan: Plan, threads: number): Estimate {
   const bounds = boundKind(request.accuracy?.bounds === true, evaluations);
   const perEvaluation = 1 / SUM_RATE[sum] + 1 / BOUND_RATE[bounds];
   const lanes = route === 'inline' ? 1 : threads;
-  const milliseconds = FIXED + PER_ROW * rows + (evaluations * perEvaluation) / lanes;
+  const tolerance = request.accuracy?.tolerance;
+  const computing =
+    method === 'multipole' && tolerance !== undefined
+      ? onLanes(
+          multipoleMilliseconds(plan.sources, plan.targets, tolerance, sum === 'field'),
+          lanes,
+        )
+      : (evaluations * perEvaluation) / lanes;
+  const milliseconds = FIXED + PER_ROW * rows + computing;
   return {pairs, route, method, milliseconds: Number(milliseconds.toPrecision(2))};
 }
+
+/** Trees and the steps between phases are made by one thread: about a third of the work. */
+const SERIAL = 1 / 3;
+
+/** How long work of the multipole method takes on several threads (Amdahl's law). */
+const onLanes = (milliseconds: number, lanes: number): number =>
+  milliseconds * (SERIAL + (1 - SERIAL) / lanes);
