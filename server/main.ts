@@ -48,6 +48,10 @@ const engine = createEngine({
   limits: config.limits,
   maxQueue: config.limits.queuedCalls,
 });
+if (!engine.hasMultipole) {
+  // Calls with a tolerance then cost what direct sums cost, which callers should not meet unawares.
+  log.warn('no kernels or tables of this build: all sums are direct; run npm run build');
+}
 await engine.warmUp();
 const groupCommit = new GroupCommit(database.driver);
 const deps: Deps = {config, database, engine, groupCommit, log, now: () => new Date()};

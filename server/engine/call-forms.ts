@@ -7,8 +7,9 @@ import type {Job} from './jobs.ts';
 export class CallForms {
   readonly #kept: KeptForms;
   readonly #holds: Hold[] = [];
-  #hits = 0;
-  #misses = 0;
+  /** Keys of what this call found, and of what it made. */
+  readonly #found = new Set<string>();
+  readonly #made = new Set<string>();
   #hasTrees = false;
 
   /** @param earlier what reading the body did */
@@ -37,16 +38,22 @@ export class CallForms {
 
   /** Undefined for a call too small to keep anything of. */
   get preparation(): Preparation | undefined {
-    const isAny = this.#hits + this.#misses > 0;
-    return isAny ? {hits: this.#hits, misses: this.#misses} : undefined;
+    const hits = this.#found.size;
+    const misses = this.#made.size;
+    return hits + misses > 0 ? {hits, misses} : undefined;
   }
 
   release(): void {
     for (const hold of this.#holds) hold.release();
   }
 
-  #count({hits, misses}: FormsReport): void {
-    this.#hits += hits;
-    this.#misses += misses;
+  /** What a call made itself and found again is no hit; tables belong to no charges. */
+  #count({made, used}: FormsReport): void {
+    for (const {key} of made) if (!key.startsWith(TABLES)) this.#made.add(key);
+    for (const key of used) {
+      if (!key.startsWith(TABLES) && !this.#made.has(key)) this.#found.add(key);
+    }
   }
 }
+
+const TABLES = 'table:';

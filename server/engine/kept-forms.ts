@@ -16,8 +16,14 @@ export interface Hold {
 }
 
 /**
- * The forms that are kept, up to a number of bytes: those that were used longest ago go first, and
- * none that a call may be using.
+ * Forms that are kept, however small: each lies in the heap in several pieces, of which it notes only
+ * so many, and tasks are told of all that they may need.
+ */
+export const MOST_FORMS = 192;
+
+/**
+ * The forms that are kept, up to a number of bytes and of forms: those that were used longest ago go
+ * first, and none that a call may be using.
  */
 export class KeptForms {
   readonly #heap: Heap;
@@ -96,7 +102,7 @@ export class KeptForms {
 
   #shrink(): void {
     for (const [key, entry] of this.#entries) {
-      if (this.#bytes <= this.#limit) return;
+      if (this.#bytes <= this.#limit && this.#entries.size <= MOST_FORMS) return;
       if (entry.users > 0) continue;
       this.#entries.delete(key);
       this.#bytes -= entry.bytes;

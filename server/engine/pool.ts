@@ -42,6 +42,8 @@ export interface Outcome {
 }
 
 export interface Engine {
+  /** Whether large sums can be made by the multipole method: not without the kernels of the build. */
+  readonly hasMultipole: boolean;
   /**
    * Reads, checks and counts a body: small ones at once, large ones in a thread.
    *
@@ -88,6 +90,7 @@ export function createEngine({
     scheduler.prepare(operation, new Uint8Array(body), limits);
 
   return {
+    hasMultipole: limits.hasMultipole,
     prepare(operation, body) {
       if (body.length > limits.inlineBytes) return read(operation, body).then(preparedOf);
       return preparedOf({plan: planBody(operation, body, limits)});

@@ -24,16 +24,16 @@ const SAMPLES = 240;
 
 /** Numbers of the matrices that one box is multiplied by, by level. */
 const FAR_NUMBERS: Readonly<Record<string, number>> = {
-  a: 3.5e4,
-  b: 8e4,
-  c: 1.4e5,
-  d: 2e5,
-  e: 3.4e5,
-  f: 6e5,
-  g: 1.3e6,
-  h: 2.1e6,
-  i: 3e6,
-  j: 4e6,
+  a: 3.1e4,
+  b: 6e4,
+  c: 1.1e5,
+  d: 1.6e5,
+  e: 2.6e5,
+  f: 4.2e5,
+  g: 5.8e5,
+  h: 9.5e5,
+  i: 1.4e6,
+  j: 2e6,
 };
 
 /** [ms] on one thread */

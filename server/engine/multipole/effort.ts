@@ -19,16 +19,16 @@ export interface Effort {
 type Row = readonly [potentialError: number, fieldError: number, pairs: number, capacity: number];
 
 const rows: Readonly<Record<string, Row>> = {
-  a: [9e-4, 8e-3, 1500, 40],
-  b: [2e-4, 1.2e-3, 2200, 48],
-  c: [3e-5, 2.5e-4, 3400, 56],
-  d: [8e-6, 5.5e-5, 5300, 64],
-  e: [2.6e-6, 1.6e-5, 8700, 72],
-  f: [6.8e-7, 3.9e-6, 14_000, 90],
-  g: [8e-8, 8e-7, 12_000, 80],
-  h: [7e-9, 9e-8, 16_000, 90],
-  i: [8e-10, 9.5e-9, 30_000, 120],
-  j: [9e-11, 1.1e-9, 40_000, 140],
+  a: [8e-4, 1e-2, 1500, 40],
+  b: [1.4e-4, 1.5e-3, 2200, 48],
+  c: [2.7e-5, 3e-4, 3400, 56],
+  d: [8e-6, 9e-5, 5300, 64],
+  e: [2.2e-6, 2.3e-5, 8700, 72],
+  f: [4.5e-7, 4.1e-6, 14_000, 90],
+  g: [6e-8, 1.1e-6, 12_000, 80],
+  h: [4.2e-9, 1e-7, 16_000, 90],
+  i: [4e-10, 1e-8, 30_000, 120],
+  j: [5e-11, 1.4e-9, 40_000, 140],
 };
 
 export const efforts: readonly Effort[] = levels.map(level => {
