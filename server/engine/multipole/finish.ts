@@ -39,45 +39,65 @@ const TOTALS = ['potential', 'fieldX', 'fieldY', 'fieldZ'] as const;
 
 const IDENTITY = [1, 0, 0, 0, 1, 0, 0, 0, 1];
 
+/** What is known of the error. */
+export interface Finding {
+  readonly estimated: EstimatedError;
+  /** The larger of the errors of V and E, three standard deviations of the estimate further up. */
+  readonly upper: number;
+}
+
 /** What the answer differs by from direct sums at the samples, in the sense of the tolerance. */
-export function estimateError(totals: Totals, samples: Samples): EstimatedError {
+export function findError(totals: Totals, samples: Samples): Finding {
   const potential = relativeErrors(totals.slice(0, 1), samples, 0);
   const shared = {
     potential: potential.relative,
     largestPotential: potential.largest,
     samples: countUnmasked(samples.sums),
   };
-  if (totals.length === 1) return shared;
+  if (totals.length === 1) return {estimated: shared, upper: potential.upper};
   const field = relativeErrors(totals.slice(1), samples, 1);
-  return {...shared, field: field.relative, largestField: field.largest};
+  return {
+    estimated: {...shared, field: field.relative, largestField: field.largest},
+    upper: Math.max(potential.upper, field.upper),
+  };
+}
+
+interface RelativeErrors {
+  readonly relative: number;
+  readonly upper: number;
+  readonly largest: number;
 }
 
 function relativeErrors(
   columns: Totals,
   {indices, weights, sums}: Samples,
   firstSum: number,
-): {relative: number; largest: number} {
+): RelativeErrors {
   const errors = columns.map((column, axis) =>
     Float64Array.from(indices, (target, n) => column[target] - sums[firstSum + axis][n]),
   );
   const error = rootOfSquares(errors, weights);
-  let largest = 0;
-  indices.forEach((_, n) => {
-    const size = rootOfSquares(errors.map(column => column.subarray(n, n + 1)));
-    largest = Math.max(largest, size);
-  });
+  if (error === 0) return {relative: 0, upper: 0, largest: 0};
+  const sizes = Float64Array.from(indices, (_, n) =>
+    rootOfSquares(errors.map(column => column.subarray(n, n + 1))),
+  );
   const all = rootOfSquares(columns);
   const mean = all / Math.sqrt(Math.max(1, countUnmasked(columns)));
+  const isSampled = indices.length < columns[0].length;
+  const margin = isSampled ? DEVIATIONS * deviation(sizes, weights, error) : 0;
   return {
-    relative: error === 0 ? 0 : error / all,
-    largest: largest === 0 ? 0 : largest / mean,
+    relative: error / all,
+    upper: (error * Math.sqrt(1 + margin)) / all,
+    largest: Math.max(...sizes) / mean,
   };
 }
 
-/** Whether what was measured is well within what was asked. */
-export function isReached({potential, field = 0}: EstimatedError, tolerance: number): boolean {
-  return Math.max(potential, field) <= CERTAINTY * tolerance;
-}
+const DEVIATIONS = 3;
 
-/** The samples are few, so not all of the tolerance is used. */
-const CERTAINTY = 0.85;
+/** Standard deviation of Σ w |Δ|², relative to it. */
+function deviation(sizes: Float64Array, weights: Float64Array, error: number): number {
+  const count = sizes.length;
+  let sum = 0;
+  for (let n = 0; n < count; n++) sum += (weights[n] * (sizes[n] / error) ** 2 - 1 / count) ** 2;
+  return Math.sqrt((count * sum) / Math.max(1, count - 1));
+}

@@ -109,7 +109,8 @@ export interface MultipoleJob {
   readonly coincident: readonly number[];
   readonly coincidentCount: number;
   readonly maskedCount: number;
-  /** What is to be checked. */
+  /** What near boxes make, and the whole, which is to be checked. */
+  readonly near?: Totals;
   readonly totals?: Totals;
   readonly estimated?: EstimatedError;
 }

@@ -3,11 +3,12 @@ import {scalesOf, writeColumn, type Results} from '../field-columns.ts';
 import type {BlockReport, FieldJob} from '../jobs.ts';
 import {RESULT} from '../methods/direct-sum.ts';
 import type {Workplace} from '../workplace.ts';
+import type {Arena} from './arena.ts';
 import type {LoadedTable} from './load-table.ts';
 import {begin} from './begin.ts';
 import {effortFor, efforts, effortWithin, nextEffort} from './effort.ts';
 import {farWork, handDown, makeExpansions, valuesWork} from './expansions.ts';
-import {addUp, estimateError, isReached} from './finish.ts';
+import {addUp, findError} from './finish.ts';
 import {kernelsOf} from './kernels.ts';
 import {atPhase, SAMPLING, type MultipoleJob, type Totals} from './multipole-job.ts';
 import {listed, nothingFound} from './coincidences.ts';
@@ -68,7 +69,7 @@ export function advance(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJo
     }
     case 'values': {
       const totals = addUp(job.field, job.parts, tools.arena);
-      const samples = chooseChecks(job.field, totals, tools.arena);
+      const samples = chooseChecks(job.field, totals, job.near ?? totals, tools.arena);
       return atPhase(job, 'check', samplingWork(job.field, samples), {samples, totals});
     }
     case 'check':
@@ -116,16 +117,17 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
     coincident: listed(found),
     coincidentCount: found.coincidentCount,
     maskedCount: found.masked.size,
+    near: near.map(column => copied(column, tools.arena)),
   });
 }
 
 function afterCheck(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   const {field, samples, totals, effort, tolerance, maskedCount} = job;
   if (!totals) throw new RangeError('expected totals');
-  const estimated = estimateError(totals, samples);
+  const {estimated, upper} = findError(totals, samples);
   // A value that single precision cannot hold is no value, and no mask either.
   const isWhole = countUnmasked(totals) === field.count - maskedCount;
-  if (isWhole && isReached(estimated, tolerance)) {
+  if (isWhole && upper <= tolerance) {
     writeTotals(field, totals);
     return atPhase(job, 'done', [], {estimated});
   }
@@ -138,6 +140,13 @@ function afterCheck(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
   throw new ServiceError('tolerance-not-reached', detail, {
     errors: [{pointer: '/accuracy/tolerance', code: 'tolerance-not-reached', detail}],
   });
+}
+
+/** Elsewhere, since totals lie where the answer does. */
+function copied(column: Float64Array, arena: Arena): Float64Array {
+  const out = arena.doubles(column.length);
+  out.set(column);
+  return out;
 }
 
 /** The last effort, unless that was it. */

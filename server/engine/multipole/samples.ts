@@ -21,12 +21,15 @@ export function chooseSamples(field: FieldJob, arena: Arena): Samples {
 }
 
 /**
- * Those to tell the error by. Of few targets all; of many, each with a chance that is a third the
- * same for all, a third by its share in ‖V‖² and a third by that in ‖E‖²: where a few targets make
- * most of a norm, as those of a large grid that lie in a small cloud of charges do, they are among
- * the samples (M. H. Hansen and W. N. Hurwitz, Ann. Math. Stat. 14 (1943)).
+ * Those to tell the error by. Of few targets all; of many, each with a chance of four parts: one the
+ * same for all, and one each by its share in ‖V‖², in ‖E‖² and in ‖E‖² of the far part. Where a few
+ * targets make most of a norm, as those of a large grid that lie in a small cloud of charges do, or
+ * most of the error, as those next to a cluster that is just far enough do, they are among the
+ * samples (M. H. Hansen and W. N. Hurwitz, Ann. Math. Stat. 14 (1943)).
+ *
+ * @param near what of `totals` comes from near boxes
  */
-export function chooseChecks(field: FieldJob, totals: Totals, arena: Arena): Samples {
+export function chooseChecks(field: FieldJob, totals: Totals, near: Totals, arena: Arena): Samples {
   const {count} = field;
   if (count <= CHECKED_SAMPLES) {
     const indices = arena.keep(seededSamples(count, count));
@@ -34,7 +37,10 @@ export function chooseChecks(field: FieldJob, totals: Totals, arena: Arena): Sam
     return {indices, weights, sums: roomForSums(field, count, arena)};
   }
   const chances = new Float64Array(count);
-  for (const columns of [totals.slice(0, 1), totals.slice(1)]) addShares(chances, columns);
+  const far = totals.map((column, n) => column.map((value, i) => value - near[n][i]));
+  addShares(chances, totals.slice(0, 1));
+  addShares(chances, totals.slice(1));
+  addShares(chances, far.length > 1 ? far.slice(1) : far);
   let all = 0;
   for (let i = 0; i < count; i++) {
     chances[i] += 1 / count;
