@@ -1,4 +1,7 @@
+import type {Grid} from '../../shared/api.ts';
+import {unitOf} from '../../shared/units.ts';
 import {Forms} from '../../server/engine/forms.ts';
+import {gridCount} from '../../server/engine/grid.ts';
 import {createHeap, Heap} from '../../server/engine/heap.ts';
 import {KeptForms} from '../../server/engine/kept-forms.ts';
 import {blockCount, computeBlock} from '../../server/engine/evaluate.ts';
@@ -11,6 +14,8 @@ import {SCRATCH} from '../../server/engine/multipole/kernels.ts';
 import {beginningOf, type MultipoleJob} from '../../server/engine/multipole/multipole-job.ts';
 import {advance} from '../../server/engine/multipole/run.ts';
 import {chargeColumns} from '../../server/engine/sources/charge-columns.ts';
+import type {Memory} from '../../server/engine/memory.ts';
+import {packTargets, type PackedTargets} from '../../server/engine/targets.ts';
 import type {Workplace} from '../../server/engine/workplace.ts';
 
 /** Positions [m], and charges [C] there. */
@@ -25,7 +30,7 @@ export interface Charges extends Points {
 
 export interface Asked {
   readonly charges: Charges;
-  readonly targets: Points;
+  readonly targets: Points | Grid;
   readonly tolerance?: number;
   readonly isField?: boolean;
   /** Where the charges may be known by. */
@@ -49,6 +54,16 @@ export interface Done {
 }
 
 const NEVER = (): boolean => false;
+
+function packedTargets(targets: Points | Grid, memory: Memory): PackedTargets {
+  if ('counts' in targets) return packTargets({grid: targets}, unitOf('length', 'm'), memory);
+  const count = targets.x.length;
+  const values = memory(POSITION_COLUMNS * count);
+  [targets.x, targets.y, targets.z].forEach((column, n) => {
+    values.set(column, n * count);
+  });
+  return {kind: 'points', values, count, address: memory.addressOf(values)};
+}
 
 /** The engine on one thread, below contract and JSON: for sums larger than a request may be. */
 export function createWorkshop(bytes = 2 ** 31) {
@@ -74,11 +89,8 @@ export function createWorkshop(bytes = 2 ** 31) {
     columns.y.set(charges.y);
     columns.z.set(charges.z);
     columns.q.set(charges.charge);
-    const count = targets.x.length;
-    const values = memory(POSITION_COLUMNS * count);
-    [targets.x, targets.y, targets.z].forEach((column, n) => {
-      values.set(column, n * count);
-    });
+    const packed = packedTargets(targets, memory);
+    const count = 'counts' in targets ? gridCount(targets.counts) : targets.x.length;
     const names: FieldColumn[] = isField
       ? ['potential', 'fieldX', 'fieldY', 'fieldZ']
       : ['potential'];
@@ -88,7 +100,7 @@ export function createWorkshop(bytes = 2 ** 31) {
       kind: 'field',
       charges: columns,
       starts: [0, charges.x.length],
-      targets: {kind: 'points', values, count, address: memory.addressOf(values)},
+      targets: packed,
       count,
       sum: isField ? 'field' : 'potential',
       bounds: 'none',
