@@ -109,8 +109,9 @@ export interface MultipoleJob {
   readonly coincident: readonly number[];
   readonly coincidentCount: number;
   readonly maskedCount: number;
-  /** What near boxes make, and the whole, which is to be checked. */
-  readonly near?: Totals;
+  /** What near boxes make of V or, if it is wanted, of E; in few digits, to save memory. */
+  readonly near?: readonly Float32Array[];
+  /** What is to be checked. */
   readonly totals?: Totals;
   readonly estimated?: EstimatedError;
 }

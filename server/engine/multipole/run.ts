@@ -69,7 +69,7 @@ export function advance(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJo
     }
     case 'values': {
       const totals = addUp(job.field, job.parts, tools.arena);
-      const samples = chooseChecks(job.field, totals, job.near ?? totals, tools.arena);
+      const samples = chooseChecks(job.field, totals, job.near ?? [], tools.arena);
       return atPhase(job, 'check', samplingWork(job.field, samples), {samples, totals});
     }
     case 'check':
@@ -117,7 +117,7 @@ function afterNear(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
     coincident: listed(found),
     coincidentCount: found.coincidentCount,
     maskedCount: found.masked.size,
-    near: near.map(column => copied(column, tools.arena)),
+    near: near.slice(isField ? 1 : 0).map(column => inFewDigits(column, tools.arena)),
   });
 }
 
@@ -143,8 +143,8 @@ function afterCheck(job: MultipoleJob, tools: Tools): MultipoleJob | FieldJob {
 }
 
 /** Elsewhere, since totals lie where the answer does. */
-function copied(column: Float64Array, arena: Arena): Float64Array {
-  const out = arena.doubles(column.length);
+function inFewDigits(column: Float64Array, arena: Arena): Float32Array {
+  const out = arena.singles(column.length);
   out.set(column);
   return out;
 }

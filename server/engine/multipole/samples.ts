@@ -27,9 +27,14 @@ export function chooseSamples(field: FieldJob, arena: Arena): Samples {
  * most of the error, as those next to a cluster that is just far enough do, they are among the
  * samples (M. H. Hansen and W. N. Hurwitz, Ann. Math. Stat. 14 (1943)).
  *
- * @param near what of `totals` comes from near boxes
+ * @param near what of E, or of V if there is no E, comes from near boxes
  */
-export function chooseChecks(field: FieldJob, totals: Totals, near: Totals, arena: Arena): Samples {
+export function chooseChecks(
+  field: FieldJob,
+  totals: Totals,
+  near: readonly Float32Array[],
+  arena: Arena,
+): Samples {
   const {count} = field;
   if (count <= CHECKED_SAMPLES) {
     const indices = arena.keep(seededSamples(count, count));
@@ -37,10 +42,9 @@ export function chooseChecks(field: FieldJob, totals: Totals, near: Totals, aren
     return {indices, weights, sums: roomForSums(field, count, arena)};
   }
   const chances = new Float64Array(count);
-  const far = totals.map((column, n) => column.map((value, i) => value - near[n][i]));
   addShares(chances, totals.slice(0, 1));
   addShares(chances, totals.slice(1));
-  addShares(chances, far.length > 1 ? far.slice(1) : far);
+  addFarShares(chances, totals.length > 1 ? totals.slice(1) : totals, near);
   let all = 0;
   for (let i = 0; i < count; i++) {
     chances[i] += 1 / count;
@@ -75,6 +79,25 @@ function addShares(chances: Float64Array, columns: Totals): void {
   for (let i = 0; i < chances.length; i++) {
     let share = 0;
     for (const column of columns) share += (column[i] / root) ** 2;
+    if (share >= 0) chances[i] += share;
+  }
+}
+
+/** The same for what is left of columns without their near part; if that can be squared. */
+function addFarShares(chances: Float64Array, columns: Totals, near: readonly Float32Array[]): void {
+  const squareAt = (i: number): number => {
+    let square = 0;
+    near.forEach((part, n) => (square += (columns[n][i] - part[i]) ** 2));
+    return square;
+  };
+  let all = 0;
+  for (let i = 0; i < chances.length; i++) {
+    const square = squareAt(i);
+    if (square >= 0) all += square;
+  }
+  if (!(all > 0 && all < Infinity)) return;
+  for (let i = 0; i < chances.length; i++) {
+    const share = squareAt(i) / all;
     if (share >= 0) chances[i] += share;
   }
 }

@@ -136,7 +136,7 @@ function mergeAlike(
 }
 
 /** Room around charges, so that targets that reach a little further need no other tree. */
-const MARGIN = 1.1;
+const MARGIN = 1.02;
 
 /** A cube around points, widened by twos until it holds `others` as well. */
 export function rootCube(points: Positions, others: Bounds): Cube {
