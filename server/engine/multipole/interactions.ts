@@ -35,7 +35,6 @@ export interface TargetTree {
 
 /** Far boxes are stored with the slot of the operator: kernels/assembly/multipole-translate.ts. */
 const SLOT_BITS = 11;
-export const MOST_BOXES = 2 ** (32 - SLOT_BITS);
 
 export interface Splitting {
   /** Pairs of a target and a charge in two near boxes up to which they are summed directly. */

@@ -71,7 +71,7 @@ export function sourceTree(
     if (box === levels[levels.length - 1]) levels.push(boxes.count);
     const held = boxes.pointsIn(box);
     if (held > capacity && boxes.isOnePlace(box, points)) mergeAlike(boxes, box, {q, members});
-    else if (held > capacity && boxes.isDivisible(box)) {
+    else if (held > capacity && boxes.isDivisible(box) && boxes.count < MOST_BOXES) {
       boxes.split(box, points);
       continue;
     }
@@ -103,6 +103,9 @@ export function sourceTree(
     members,
   };
 }
+
+/** Far boxes are told by number and slot in 32 bits (interactions.ts), with room for a last split. */
+const MOST_BOXES = 2 ** 21 - 8;
 
 /** Numbers of one charge: x, y, z and the charge. */
 export const CHARGE_STRIDE = 4;
