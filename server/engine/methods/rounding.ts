@@ -1,5 +1,6 @@
 import type {FieldJob} from '../jobs.ts';
 import {seededSamples} from '../samples.ts';
+import {rootOfSquares} from '../multipole/norms.ts';
 import {positionsOfSamples} from '../targets.ts';
 import type {Workplace} from '../workplace.ts';
 import {DirectSum, RESULT} from './direct-sum.ts';
@@ -21,20 +22,32 @@ export function reachedByRounding(job: FieldJob, workplace: Workplace): number {
     chargeRoundings: 0,
   } as const;
   const sum = new DirectSum(job.charges, options, indices.length, workplace);
-  const squares = {v: 0, e: 0, vBound: 0, eBound: 0};
+  const [v, ex, ey, ez, vBound, eBound] = Array.from(
+    {length: 6},
+    () => new Float64Array(indices.length),
+  );
   for (let start = 0; start < indices.length; start += sum.capacity) {
     const count = Math.min(sum.capacity, indices.length - start);
     positionsOfSamples(job.targets, indices, start, count, sum.positions);
     sum.compute(0, count, [0, job.charges.count]);
-    for (let i = 0; i < count; i++) {
-      squares.v += sum.result(RESULT.v)[i] ** 2;
-      squares.vBound += sum.result(RESULT.vBound)[i] ** 2;
-      if (job.sum === 'potential') continue;
-      for (let axis = 0; axis < 3; axis++) squares.e += sum.result(RESULT.e + axis)[i] ** 2;
-      squares.eBound += sum.result(RESULT.eBound)[i] ** 2;
-    }
+    const keep = (place: number, out: Float64Array): void => {
+      out.set(sum.result(place).subarray(0, count), start);
+    };
+    keep(RESULT.v, v);
+    keep(RESULT.vBound, vBound);
+    if (job.sum === 'potential') continue;
+    [ex, ey, ez].forEach((out, axis) => {
+      keep(RESULT.e + axis, out);
+    });
+    keep(RESULT.eBound, eBound);
   }
-  const ratio = (bound: number, value: number): number =>
-    value === 0 ? 0 : Math.sqrt(bound / value);
-  return Math.max(ratio(squares.vBound, squares.v), ratio(squares.eBound, squares.e));
+  return Math.max(ratio([vBound], [v]), ratio([eBound], [ex, ey, ez]));
+}
+
+/** Where terms cancel wholly all may be lost, but no more than that. */
+function ratio(bounds: readonly Float64Array[], values: readonly Float64Array[]): number {
+  const bound = rootOfSquares(bounds);
+  const value = rootOfSquares(values);
+  if (bound === 0) return 0;
+  return value === 0 ? 1 : Math.min(bound / value, Number.MAX_VALUE);
 }
