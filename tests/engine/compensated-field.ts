@@ -1,7 +1,7 @@
 import type {Charges, Points} from '../support/workshop.ts';
 
 /** 1/(4π ε₀) [N·m²/C²], ε₀ = 8.8541878188e-12 F/m (CODATA 2022). */
-const COULOMB = 1 / (4 * Math.PI * 8.8541878188e-12);
+export const COULOMB = 1 / (4 * Math.PI * 8.8541878188e-12);
 
 /** V [V] and E [V/m] at some targets; NaN where a target lies on a charge that is not zero. */
 export interface Field {

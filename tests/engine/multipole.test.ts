@@ -1,8 +1,9 @@
 import {describe, expect, test} from 'vitest';
 
 import type {FilledRequest} from '../../server/engine/filled-request.ts';
+import {efforts} from '../../server/engine/multipole/effort.ts';
 import {createWorkshop, type Charges, type Done, type Points} from '../support/workshop.ts';
-import {compensatedField, type Field} from './compensated-field.ts';
+import {compensatedField, COULOMB, type Field} from './compensated-field.ts';
 import {fixed, toNumber} from './fixed-point.ts';
 import {families} from './multipole-families.ts';
 import {exactCharges, exactField} from './oracle.ts';
@@ -61,7 +62,7 @@ function expectExact({charges, targets}: {charges: Charges; targets: Points}, ex
 }
 
 describe('no tolerance is exceeded, and what was reached is told to a factor of 3, with', () => {
-  test.each(families(3000))('$name', family => {
+  test.each(families(2200))('$name', family => {
     const {charges, targets} = family;
     const exact = compensatedField(charges, targets);
     expectExact(family, exact);
@@ -75,7 +76,7 @@ describe('no tolerance is exceeded, and what was reached is told to a factor of 
       for (const quantity of ['potential', 'field'] as const) {
         const error = relativeError(done, exact, VECTORS[quantity]);
         const where = `${quantity} at ${tolerance}: ${error}, ${done.method}`;
-        expect(error, where).toBeLessThanOrEqual(done.method === 'direct' ? 1e-12 : tolerance);
+        expect(error, where).toBeLessThanOrEqual(tolerance);
         const estimated = estimatesOf(done)?.[quantity];
         if (estimated === undefined || Math.max(error, estimated) < ROUNDING) continue;
         expect(estimated, where).toBeGreaterThan(error / 3);
@@ -99,8 +100,8 @@ const alternating = (n: number): number => (n % 2 ? 1e-9 : -1e-9);
 test('with deep trees, many targets and samples of them, no tolerance is exceeded', () => {
   const charges = cloud(30_000, 1, alternating);
   const targets = cloud(30_000, 2, alternating);
-  const indices = column(300, n => 100 * n + 7);
-  const exact = compensatedField(charges, targets, Int32Array.from(indices));
+  const indices = Int32Array.from({length: 200}, (_, n) => 150 * n + 7);
+  const exact = compensatedField(charges, targets, indices);
   for (const tolerance of [1e-3, 1e-5, 1e-7, 1e-9]) {
     const done = workshop.compute({charges, targets, tolerance});
     expect(done.method).toBe('multipole');
@@ -136,8 +137,8 @@ test('a few targets that make most of the norm are among those that are looked a
 
 test('charges too small to be squared are held to the tolerance as all others are', () => {
   for (const size of [1e-170, 1e-290]) {
-    const charges = cloud(5000, 5, n => size * (n % 3 ? 1 : -1.5));
-    const targets = cloud(5000, 6, () => 0);
+    const charges = cloud(2500, 5, n => size * (n % 3 ? 1 : -1.5));
+    const targets = cloud(2500, 6, () => 0);
     const exact = compensatedField(
       {...charges, charge: charges.charge.map(q => q / size)},
       targets,
@@ -152,8 +153,8 @@ test('charges too small to be squared are held to the tolerance as all others ar
 });
 
 test('the potential alone is the same as with the field, to the tolerance', () => {
-  const charges = cloud(6000, 7, alternating);
-  const targets = cloud(6000, 8, alternating);
+  const charges = cloud(4000, 7, alternating);
+  const targets = cloud(4000, 8, alternating);
   const exact = compensatedField(charges, targets);
   for (const tolerance of [1e-3, 1e-6, 1e-9]) {
     const done = workshop.compute({charges, targets, tolerance, isField: false});
@@ -177,5 +178,40 @@ test('the magnitude of a charge changes no digit of what is summed by powers of 
   expect(plain.method).toBe('multipole');
   raised.columns.forEach((values, n) => {
     expect(values.map(value => value / 2 ** 40)).toEqual(plain.columns[n]);
+  });
+});
+
+test('the far part of every level is about as good as is expected of it', () => {
+  const random = randomNumbers(13);
+  const charges = cloud(20_000, 11, () => (random() < 0.5 ? 1e-9 : -1e-9));
+  const targets = cloud(20_000, 12, alternating);
+  const indices = Int32Array.from({length: 400}, (_, n) => 50 * n + 3);
+  const exact = compensatedField(charges, targets, indices);
+  efforts.forEach(({level, potentialError, fieldError}, effort) => {
+    const farError = (isField: boolean, columns: readonly number[]): number => {
+      const changes = {effort, leastEffort: effort};
+      const done = workshop.compute({charges, targets, isField, tolerance: 1, changes});
+      expect(done.job).toMatchObject({kind: 'multipole', effort});
+      let error = 0;
+      let norm = 0;
+      columns.forEach((which, place) => {
+        indices.forEach((target, n) => {
+          const value = exact.columns[which][n];
+          error += (done.columns[which][target] - value) ** 2;
+          norm += (value - COULOMB * done.near[place][target]) ** 2;
+        });
+      });
+      return Math.sqrt(error / norm);
+    };
+    const errors = [
+      {expected: potentialError, found: farError(false, VECTORS.potential)},
+      {expected: fieldError, found: farError(true, VECTORS.field)},
+    ];
+    for (const {expected, found} of errors) {
+      const share = found / expected;
+      // Sets differ by their net charge, which makes the more of the far part the larger it is.
+      expect(share, `${level.name}: ${found}`).toBeLessThan(1.6);
+      expect(share, `${level.name}: ${found}`).toBeGreaterThan(0.4);
+    }
   });
 });

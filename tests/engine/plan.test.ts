@@ -1,4 +1,4 @@
-import {expect, test} from 'vitest';
+import {describe, expect, test} from 'vitest';
 
 import type {Body, FieldRequest, Grid, Path, Operation, ProblemCode} from '../../shared/api.ts';
 import {ServiceError} from '../../server/errors.ts';
@@ -214,4 +214,58 @@ test('20 faults are listed and all are counted', () => {
   const {errors, errorCount} = refusal('fields', fields(1, 1, {bodies}));
   expect(errors.length).toBe(20);
   expect(errorCount).toBe(29);
+});
+
+describe('the method', () => {
+  const tolerance = 1e-5;
+  const methodOf = (more: Partial<FieldRequest>, limits = defaultLimits): string =>
+    plan('fields', fields(5000, 10_000, more), 0, limits).method;
+
+  test('is direct without a tolerance, with bounds and with the gradient', () => {
+    expect(methodOf({accuracy: {tolerance}})).toBe('multipole');
+    expect(methodOf({})).toBe('direct');
+    expect(methodOf({accuracy: {}})).toBe('direct');
+    expect(methodOf({accuracy: {tolerance, bounds: true}})).toBe('direct');
+    expect(methodOf({accuracy: {tolerance}, quantities: ['fieldGradient']})).toBe('direct');
+    expect(methodOf({accuracy: {tolerance}}, {...defaultLimits, hasMultipole: false})).toBe(
+      'direct',
+    );
+  });
+
+  test('is direct for few charges or few targets, and costs by the point where it is not', () => {
+    const accuracy = {tolerance};
+    expect(plan('fields', fields(100, 1000, {accuracy})).method).toBe('direct');
+    expect(plan('fields', fields(40_000, 10, {accuracy})).method).toBe('direct');
+    const planned = plan('fields', fields(5000, 10_000, {accuracy}));
+    expect(planned).toMatchObject({method: 'multipole', route: 'worker', pairs: 15_000_000});
+    expect(plan('fields', fields(5000, 10_000)).pairs).toBe(50_000_000);
+  });
+
+  test('is the same for the same shape, whatever the values', () => {
+    const request = fields(5000, 10_000, {accuracy: {tolerance}});
+    const zeros = new Array<number>(5000).fill(0);
+    const charges = {x: zeros, y: zeros, z: zeros, charge: zeros};
+    const {method, pairs} = plan('fields', {...request, bodies: [{charges}]});
+    expect({method, pairs}).toEqual({method: 'multipole', pairs: 15_000_000});
+  });
+
+  test('is multipole wherever a direct sum would be too large, and too large is said with a hint', () => {
+    // Too tight for it to be quicker, if there were the choice.
+    const accuracy = {tolerance: 1e-9};
+    const limits = {...defaultLimits, synchronousPairs: 4e6};
+    expect(plan('fields', fields(2000, 1900, {accuracy}), 0, limits).method).toBe('direct');
+    const huge = {...defaultLimits, synchronousPairs: 1e7};
+    expect(plan('fields', fields(4000, 2600, {accuracy}), 0, huge).method).toBe('multipole');
+    const refused = (request: FieldRequest): string => {
+      try {
+        return plan('fields', request, 0, huge).route;
+      } catch (error) {
+        // The refusal that is expected.
+        return (error as ServiceError).message;
+      }
+    };
+    expect(refused(fields(4000, 2600))).toContain('accuracy.tolerance');
+    expect(refused(fields(4000, 6100, {accuracy}))).not.toContain('accuracy.tolerance');
+    expect(refused(fields(4000, 6100, {accuracy}))).toContain('10100000 pairs');
+  });
 });

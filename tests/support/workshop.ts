@@ -45,6 +45,8 @@ export interface Done {
   readonly job: Job;
   /** V, Eₓ, E_y, E_z in SI, NaN where masked. */
   readonly columns: readonly Float64Array[];
+  /** What near boxes make of E or, alone, of V, in few digits and without 1/(4π ε₀) [C/m², C/m]. */
+  readonly near: readonly Float32Array[];
   readonly hits: number;
   readonly misses: number;
   /** [bytes] of the process when all was computed. */
@@ -159,9 +161,10 @@ export function createWorkshop(bytes = 2 ** 31) {
         field.out.slice(n * field.count, (n + 1) * field.count),
       );
       const method = job.kind === 'multipole' ? 'multipole' : 'direct';
+      const near = (job.kind === 'multipole' ? (job.near ?? []) : []).map(each => each.slice());
       const {hits, misses} = forms.report;
       hold.add(forms.report);
-      return {method, job, columns, hits, misses, resident, steps};
+      return {method, job, columns, near, hits, misses, resident, steps};
     } finally {
       heap.release(tag);
       heap.release(scratch);
