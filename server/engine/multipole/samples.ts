@@ -9,7 +9,9 @@ import {rootOfSquares} from './norms.ts';
 
 /** Targets that are summed directly as well: to choose a level, and to see what was reached. */
 const FIRST_SAMPLES = 32;
-const CHECKED_SAMPLES = 208;
+const CHECKED_SAMPLES = 216;
+/** Of those that were drawn, how many should be different. */
+const LEAST_SAMPLES = 200;
 /** Evaluations of a piece of work: some 20 ms of them. */
 const PAIRS_OF_WORK = 8e6;
 
@@ -50,11 +52,30 @@ export function chooseChecks(
     chances[i] += 1 / count;
     all += chances[i];
   }
-  const places = seededSamples(PARTS, CHECKED_SAMPLES);
+  // A target may be drawn twice, so some more draws are tried where too few were different.
+  let draws = CHECKED_SAMPLES;
+  let drawn = draw(chances, all, draws);
+  for (let tries = 0; drawn.chosen.length < LEAST_SAMPLES && tries < 4; tries++) {
+    draws = Math.ceil(1.25 * draws);
+    drawn = draw(chances, all, draws);
+  }
+  const indices = arena.keep(drawn.chosen);
+  const stored = arena.doubles(indices.length);
+  stored.set(drawn.weights);
+  return {indices, weights: stored, sums: roomForSums(field, indices.length, arena)};
+}
+
+/** Targets drawn by their chances, and what each stands for. */
+function draw(
+  chances: Float64Array,
+  all: number,
+  draws: number,
+): {chosen: number[]; weights: number[]} {
+  const places = seededSamples(PARTS, draws);
   const chosen: number[] = [];
   const weights: number[] = [];
   let passed = 0;
-  for (let i = 0, n = 0; i < count; i++) {
+  for (let i = 0, n = 0; i < chances.length; i++) {
     passed += chances[i];
     const before = n;
     while (n < places.length && (places[n] / PARTS) * all < passed) n++;
@@ -63,10 +84,7 @@ export function chooseChecks(
     // How often it was met, over how often that is to be expected.
     weights.push(((n - before) / places.length) * (all / chances[i]));
   }
-  const indices = arena.keep(chosen);
-  const stored = arena.doubles(chosen.length);
-  stored.set(weights);
-  return {indices, weights: stored, sums: roomForSums(field, chosen.length, arena)};
+  return {chosen, weights};
 }
 
 /** The sum of all chances, in as many parts as tell places apart. */
