@@ -216,7 +216,7 @@ export const tooMuch: readonly BadBody[] = [
   {
     what: 'more pairs than one call computes',
     body: {
-      bodies: [{charges: columns(3000, true)}],
+      bodies: [{charges: columns(12_000, true)}],
       targets: {
         grid: {
           origin: [0, 0, 9],
