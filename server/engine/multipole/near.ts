@@ -1,3 +1,4 @@
+import {MULTIPOLE_PAIRS_PER_POINT} from '../../../shared/pricing.ts';
 import {ServiceError} from '../../errors.ts';
 import type {FieldJob, Stop} from '../jobs.ts';
 import {ownMemory} from '../memory.ts';
@@ -15,9 +16,10 @@ import {CHARGE_STRIDE} from './source-tree.ts';
 const PAIRS_OF_WORK = 8e6;
 
 /** Leaves of all parts, in pieces of about the same work. */
-export function nearWork({mostPairs}: MultipoleJob, parts: readonly Part[]): Work[] {
+export function nearWork({field, mostPairs}: MultipoleJob, parts: readonly Part[]): Work[] {
   const total = nearPairs(parts);
-  if (total > mostPairs) throw tooNear(total, mostPairs);
+  const most = Math.max(mostPairs, NEAR_OF_PRICE * pointsOf(field));
+  if (total > most) throw tooNear(total, most);
   const work: Work[] = [];
   parts.forEach(({targets}, part) => {
     const {length} = targets.leaves;
@@ -48,6 +50,11 @@ function pairsOfLeaf(targets: TargetTree, leaf: number): number {
   const {ranges} = targets;
   return (ranges[2 * box + 1] - ranges[2 * box]) * chargesNear(targets, box);
 }
+
+/** Near pairs that a charge or a target of a very large sum may have: twice what it is charged. */
+const NEAR_OF_PRICE = 2 * MULTIPOLE_PAIRS_PER_POINT;
+
+const pointsOf = ({charges, count}: FieldJob): number => charges.count + count;
 
 function tooNear(pairs: number, most: number): ServiceError {
   return new ServiceError(
