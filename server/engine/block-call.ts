@@ -75,7 +75,6 @@ export class BlockCall implements Call {
     this.#isBetween = true;
     return guarded(this.#run, async () => {
       this.#packed = await step();
-      this.#run.forms.holdTrees(this.#packed.job);
       this.#reports = [];
       this.#nextBlock = 0;
       this.#done = 0;
@@ -86,17 +85,20 @@ export class BlockCall implements Call {
   async #pack(): Promise<PackedCall> {
     const {prepared, tag, forms} = this.#run;
     const {plan, call} = prepared;
-    const task = {type: 'pack', plan, call, tag, forms: forms.known} as const;
-    const result = await this.#threads.do(task);
-    forms.add(result.forms);
+    // What a thread has read is packed already and needs only its place in the heap.
+    const hold = call ? undefined : forms.columns;
+    const known = hold?.known ?? {};
+    const result = await this.#threads.do({type: 'pack', plan, call, tag, forms: known});
+    if (hold) forms.add(hold, result.forms);
     return result.call;
   }
 
   async #advance(job: Job & {kind: 'multipole'}): Promise<PackedCall> {
     const {tag, forms, flag} = this.#run;
-    const task = {type: 'advance', job, tag, forms: forms.known, flag} as const;
+    const hold = forms.treesOf(job);
+    const task = {type: 'advance', job, tag, forms: hold.known, flag} as const;
     const result = await this.#threads.do(task);
-    forms.add(result.forms);
+    forms.add(hold, result.forms);
     if (!this.#packed) throw new RangeError('expected a packed call');
     return {...this.#packed, job: result.job};
   }

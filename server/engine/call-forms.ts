@@ -1,39 +1,39 @@
 import type {Preparation} from './answers/header.ts';
-import type {FormsReport, KnownForms} from './forms.ts';
+import type {FormsReport} from './forms.ts';
 import type {Hold, KeptForms} from './kept-forms.ts';
-import type {Job} from './jobs.ts';
+import type {MultipoleJob} from './multipole/multipole-job.ts';
 
 /** The prepared forms of one call, from its first task to its end. */
 export class CallForms {
   readonly #kept: KeptForms;
-  readonly #holds: Hold[] = [];
+  #columns: Hold | undefined;
+  #trees: Hold | undefined;
   /** Keys of what this call found, and of what it made. */
   readonly #found = new Set<string>();
   readonly #made = new Set<string>();
-  #hasTrees = false;
 
   /** @param earlier what reading the body did */
   constructor(kept: KeptForms, earlier?: FormsReport) {
     this.#kept = kept;
     if (earlier) this.#count(earlier);
-    this.#holds.push(kept.hold(['columns:', 'table:']));
   }
 
-  get known(): KnownForms {
-    return Object.assign({}, ...this.#holds.map(({known}) => known)) as KnownForms;
+  /** What a body that is to be packed may need: any packed one. */
+  get columns(): Hold {
+    return (this.#columns ??= this.#kept.hold(['columns:']));
   }
 
-  /** Takes hold of the trees of the charges of a job, once it is known. */
-  holdTrees(job: Job): void {
-    if (this.#hasTrees || job.kind !== 'multipole') return;
-    this.#hasTrees = true;
-    const digests = job.charges.flatMap(({digest}) => (digest === undefined ? [] : [digest]));
-    this.#holds.push(this.#kept.hold(digests.map(digest => `tree:${digest}`)));
+  /** What the steps of a job may need: tables, and the trees of its own charges. */
+  treesOf({charges}: MultipoleJob): Hold {
+    const digests = charges.flatMap(({digest}) => (digest === undefined ? [] : [digest]));
+    this.#trees ??= this.#kept.hold([TABLES, ...digests.map(digest => `tree:${digest}`)]);
+    return this.#trees;
   }
 
-  add(report: FormsReport): void {
+  /** Takes over what a task did with the forms of a hold. */
+  add(hold: Hold, report: FormsReport): void {
     this.#count(report);
-    this.#holds[0].add(report);
+    hold.add(report);
   }
 
   /** Undefined for a call too small to keep anything of. */
@@ -44,7 +44,8 @@ export class CallForms {
   }
 
   release(): void {
-    for (const hold of this.#holds) hold.release();
+    this.#columns?.release();
+    this.#trees?.release();
   }
 
   /** What a call made itself and found again is no hit; tables belong to no charges. */

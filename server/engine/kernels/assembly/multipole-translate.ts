@@ -8,10 +8,10 @@ import {Operator, Sources, Table, Targets} from './multipole-structs';
 const TOGETHER: usize = 4;
 const GROUP = 20;
 
-/** Far boxes are told by slot and number: multipole/lists.ts. */
+/** Far boxes are told by slot and number: multipole/interactions.ts. */
 const SLOT_BITS = 11;
 
-/** out[t] += matrix · input[t] for four runs of numbers, `inputStep` and `outStep` bytes apart. */
+/** out[t] += matrix · input[t] for four runs of numbers, `inputStep` bytes apart; `outs` has addresses. */
 export function apply<T>(operator: Operator, input: usize, inputStep: usize, outs: usize): void {
   const size = <usize>sizeof<T>();
   for (let g = 0; g < operator.groupCount; g++) {
