@@ -57,7 +57,7 @@ export function total<T>(value: v128): T {
 /** out[at …] += value · scale, in double precision. */
 // @ts-ignore: decorator
 @inline
-export function addScaled<T>(out: usize, at: i32, value: v128, scale: f64): void {
+function addScaled<T>(out: usize, at: i32, value: v128, scale: f64): void {
   const s = f64x2.splat(scale);
   const place = out + (<usize>at << 3);
   if (sizeof<T>() == 8) {
@@ -66,4 +66,31 @@ export function addScaled<T>(out: usize, at: i32, value: v128, scale: f64): void
   }
   v128.store(place, f64x2.add(v128.load(place), f64x2.mul(f64x2.promote_low_f32x4(value), s)));
   v128.store(place, f64x2.add(v128.load(place, 16), f64x2.mul(upper(value), s)), 16);
+}
+
+/** Adds a vector to the one at an address. */
+// @ts-ignore: decorator
+@inline
+export function addTo<T>(place: usize, value: v128): void {
+  v128.store(place, v128.add<T>(v128.load(place), value));
+}
+
+/** Adds to the places of `out` that lie before `to`: what comes after is of another box. */
+// @ts-ignore: decorator
+@inline
+export function addPart<T>(out: usize, at: i32, to: i32, value: v128, scale: f64): void {
+  if (at + lanes<T>() <= to) {
+    addScaled<T>(out, at, value, scale);
+    return;
+  }
+  let rest = value;
+  for (let i = at; i < to; i++) {
+    const place = out + (<usize>i << 3);
+    if (sizeof<T>() == 8) {
+      store<f64>(place, load<f64>(place) + f64x2.extract_lane(rest, 0) * scale);
+    } else {
+      store<f64>(place, load<f64>(place) + <f64>f32x4.extract_lane(rest, 0) * scale);
+      rest = v128.shuffle<f32>(rest, rest, 1, 2, 3, 3);
+    }
+  }
 }

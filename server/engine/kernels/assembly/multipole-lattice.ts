@@ -1,32 +1,11 @@
-import {Operator, Sources, Table, Targets} from './multipole-structs';
-import {apply} from './multipole-translate';
+import {Lattice, Operator, Sources, Table, Targets} from './multipole-structs';
+import {apply} from './multipole-multiply';
+import {ADDRESS} from './multipole-signs';
 
 // Values at boxes whose targets are a whole regular lattice: the same points from the centre of every
 // box, so the harmonics there are a matrix, and by symmetry only those of the points on the positive
 // side of every axis are needed (multipole/lattice.ts).
 
-// @ts-ignore: decorator
-@unmanaged
-export class Lattice {
-  operator: usize;
-  /** Points on the positive side, padded, and along each axis. */
-  rows: i32;
-  halfX: i32;
-  halfY: i32;
-  halfZ: i32;
-  /** Points along each axis, and whether those of an axis lie on both sides of the centre. */
-  sideX: i32;
-  sideY: i32;
-  sideZ: i32;
-  mirrors: i32;
-  /** Counts of the whole grid; the sign of its steps. */
-  countX: i32;
-  countY: i32;
-  /** Places that terms of derivatives go to. */
-  places: usize;
-}
-
-const ADDRESS: usize = 4;
 /** Numbers of a leaf in the list: box, and the first node of it along each axis. */
 const LEAF = 16;
 

@@ -1,5 +1,4 @@
-import {single, upper} from './lanes';
-import {addPart} from './multipole-points';
+import {addPart, single, upper} from './lanes';
 import {Sources, Targets} from './multipole-structs';
 
 // Direct sums over the charges near a box. In single precision positions are taken from the centre

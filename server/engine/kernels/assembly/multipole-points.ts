@@ -1,4 +1,4 @@
-import {addScaled, lanes, local, total} from './lanes';
+import {addPart, lanes, local, total} from './lanes';
 import {Sources, Table, Targets} from './multipole-structs';
 
 // From charges to multipoles, and from local expansions to values. The harmonics are made by the
@@ -191,26 +191,6 @@ function values<T>(
       addPart<T>(targets.ex, i, to, gx, eScale);
       addPart<T>(targets.ey, i, to, gy, eScale);
       addPart<T>(targets.ez, i, to, gz, eScale);
-    }
-  }
-}
-
-/** Adds to the places of `out` that lie before `to`: what comes after is of another box. */
-// @ts-ignore: decorator
-@inline
-export function addPart<T>(out: usize, at: i32, to: i32, value: v128, scale: f64): void {
-  if (at + lanes<T>() <= to) {
-    addScaled<T>(out, at, value, scale);
-    return;
-  }
-  let rest = value;
-  for (let i = at; i < to; i++) {
-    const place = out + (<usize>i << 3);
-    if (sizeof<T>() == 8) {
-      store<f64>(place, load<f64>(place) + f64x2.extract_lane(rest, 0) * scale);
-    } else {
-      store<f64>(place, load<f64>(place) + <f64>f32x4.extract_lane(rest, 0) * scale);
-      rest = v128.shuffle<f32>(rest, rest, 1, 2, 3, 3);
     }
   }
 }

@@ -90,3 +90,25 @@ export class Targets {
   flags: usize;
   parents: usize;
 }
+
+/** Boxes whose targets are a whole regular lattice, of one size: multipole/lattice.ts. */
+// @ts-ignore: decorator
+@unmanaged
+export class Lattice {
+  operator: usize;
+  /** Points on the positive side, padded, and along each axis. */
+  rows: i32;
+  halfX: i32;
+  halfY: i32;
+  halfZ: i32;
+  /** Points along each axis, and whether those of an axis lie on both sides of the centre. */
+  sideX: i32;
+  sideY: i32;
+  sideZ: i32;
+  mirrors: i32;
+  /** Counts of the whole grid; the sign of its steps. */
+  countX: i32;
+  countY: i32;
+  /** Places that terms of derivatives go to. */
+  places: usize;
+}
