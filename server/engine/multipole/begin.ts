@@ -37,8 +37,9 @@ export function begin(job: MultipoleJob, tools: Tools): MultipoleJob {
     return partOf(job, charges, targets, reach, table, tools);
   });
   const samples = chooseSamples(field, arena);
-  const work = [...nearWork(job, parts), ...samplingWork(field, samples)];
-  return atPhase(job, 'near', work, {
+  const near = nearWork(job, parts);
+  return atPhase(job, 'near', [...near.work, ...samplingWork(field, samples)], {
+    nearPairs: near.pairs,
     table,
     parts,
     samples,

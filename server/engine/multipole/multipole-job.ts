@@ -102,6 +102,8 @@ export interface MultipoleJob {
   /** The table of the effort; there once the trees are. */
   readonly table?: LoadedTable;
   readonly parts: readonly Part[];
+  /** Pairs of near boxes, which are summed directly. */
+  readonly nearPairs: number;
   readonly samples: Samples;
   /** [m] Up to here a pair may be coincident. */
   readonly reach: number;
@@ -135,6 +137,7 @@ export function beginningOf(
     work: [],
     blocks: [0],
     parts: [],
+    nearPairs: 0,
     samples: {indices: new Int32Array(0), weights: new Float64Array(0), sums: []},
     reach: 0,
     coincident: [],

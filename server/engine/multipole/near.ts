@@ -15,12 +15,13 @@ import {CHARGE_STRIDE} from './source-tree.ts';
 /** Evaluations of a piece of work: some 20 ms of them. */
 const PAIRS_OF_WORK = 8e6;
 
-/** Leaves of all parts, in pieces of about the same work. */
-export function nearWork({field, mostPairs}: MultipoleJob, parts: readonly Part[]): Work[] {
-  const total = nearPairs(parts);
-  const most = Math.max(mostPairs, NEAR_OF_PRICE * pointsOf(field));
-  if (total > most) throw tooNear(total, most);
+/** Leaves of all parts, in pieces of about the same work, and all pairs that are summed directly. */
+export function nearWork(
+  {field, mostPairs}: MultipoleJob,
+  parts: readonly Part[],
+): {work: Work[]; pairs: number} {
   const work: Work[] = [];
+  let total = 0;
   parts.forEach(({targets}, part) => {
     const {length} = targets.leaves;
     let first = 0;
@@ -29,20 +30,14 @@ export function nearWork({field, mostPairs}: MultipoleJob, parts: readonly Part[
       pairs += pairsOfLeaf(targets, n);
       if (pairs < PAIRS_OF_WORK && n + 1 < length) continue;
       work.push({part, first, last: n + 1});
+      total += pairs;
       first = n + 1;
       pairs = 0;
     }
   });
-  return work;
-}
-
-/** Pairs of a target and a charge that are summed directly. */
-export function nearPairs(parts: readonly Part[]): number {
-  let total = 0;
-  for (const {targets} of parts) {
-    for (let n = 0; n < targets.leaves.length; n++) total += pairsOfLeaf(targets, n);
-  }
-  return total;
+  const most = Math.max(mostPairs, NEAR_OF_PRICE * pointsOf(field));
+  if (total > most) throw tooNear(total, most, field);
+  return {work, pairs: total};
 }
 
 function pairsOfLeaf(targets: TargetTree, leaf: number): number {
@@ -56,12 +51,11 @@ const NEAR_OF_PRICE = 2 * MULTIPOLE_PAIRS_PER_POINT;
 
 const pointsOf = ({charges, count}: FieldJob): number => charges.count + count;
 
-function tooNear(pairs: number, most: number): ServiceError {
-  return new ServiceError(
-    'too-large-for-synchronous',
-    `So many charges and targets are within the coincidence distance or at so few places that ${pairs} pairs would be summed directly, and one call sums up to ${most}; use a smaller coincidenceDistance or split the targets over several calls.`,
-    {errors: []},
-  );
+function tooNear(pairs: number, most: number, {coincidenceDistance}: FieldJob): ServiceError {
+  const detail = `So many charges and targets are within the coincidence distance or at so few places that ${pairs} pairs would be summed directly, and one call sums up to ${most}; use a smaller coincidenceDistance or split the targets over several calls.`;
+  const pointer = coincidenceDistance > 0 ? '/coincidenceDistance' : '/targets';
+  const code = 'too-large-for-synchronous';
+  return new ServiceError(code, detail, {errors: [{pointer, code, detail}]});
 }
 
 /** How many charges are near a box or one of its ancestors. */

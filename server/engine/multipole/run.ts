@@ -12,7 +12,7 @@ import {addUp, findError} from './finish.ts';
 import {kernelsOf} from './kernels.ts';
 import {atPhase, SAMPLING, type MultipoleJob, type Totals} from './multipole-job.ts';
 import {listed, nothingFound} from './coincidences.ts';
-import {nearPairs, sumFlagged} from './near.ts';
+import {sumFlagged} from './near.ts';
 import {countUnmasked} from './norms.ts';
 import {chooseChecks, samplingWork, sumSamples} from './samples.ts';
 import {farShare} from './share.ts';
@@ -91,7 +91,7 @@ function beginWith(
   const begun = begin({...job, ...changes}, tools);
   const all = field.charges.count * field.count;
   // As with a coincidence distance as large as the whole.
-  const isDirect = all <= mostPairs && nearPairs(begun.parts) > MOST_NEAR * all;
+  const isDirect = all <= mostPairs && begun.nearPairs > MOST_NEAR * all;
   return isDirect ? field : begun;
 }
 
