@@ -194,3 +194,25 @@ test(
     }
   },
 );
+
+test('too many near pairs are refused at the member that makes them, before any is summed', async () => {
+  // As small as the limits allow: 5,000 × 5,000 all near, where the call is charged 1e7 pairs.
+  const small = createEngine({threads: 1, limits: {synchronousPairs: 1e7}});
+  try {
+    const body: FieldRequest = {
+      bodies: [{charges: columns(5000, within(1), alternating)}],
+      targets: points(5000, within(1)),
+      coincidenceDistance: 1,
+      accuracy: {tolerance: 1e-3},
+    };
+    const prepared = await small.prepare('fields', Buffer.from(JSON.stringify(body), 'utf8'));
+    const refusal = small.run(prepared, {signal: new AbortController().signal});
+    await expect(refusal).rejects.toMatchObject({
+      code: 'too-large-for-synchronous',
+      errors: [{pointer: '/coincidenceDistance', code: 'too-large-for-synchronous'}],
+    });
+    expect(small.memory().allocated).toBe(0);
+  } finally {
+    await small.close();
+  }
+});
